@@ -1,0 +1,3 @@
+module tannery
+
+go 1.26
