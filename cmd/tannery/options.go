@@ -1,0 +1,271 @@
+package main
+
+import (
+	"errors"
+	"fmt"
+	"math"
+	"strconv"
+	"strings"
+	"time"
+
+	"github.com/spf13/pflag"
+
+	"tannery/ensembles"
+)
+
+// The option values below check what they are given while the command line
+// is read, so that a bad value is refused before anything else happens. An
+// error of Set says what is allowed; flagError adds the option and the value.
+
+// numberOption is an option that takes one real number.
+type numberOption struct {
+	value   float64
+	given   bool
+	allowed string // in words, after "must be"
+	ok      func(float64) bool
+}
+
+func (o *numberOption) Set(text string) error {
+	v, err := strconv.ParseFloat(text, 64)
+	if err != nil || math.IsNaN(v) || math.IsInf(v, 0) || !o.ok(v) {
+		return errors.New("must be " + o.allowed)
+	}
+	o.value, o.given = v, true
+	return nil
+}
+
+func (o *numberOption) Type() string { return "NUMBER" }
+
+func (o *numberOption) String() string {
+	if !o.given {
+		return ""
+	}
+	return strconv.FormatFloat(o.value, 'g', -1, 64)
+}
+
+// pointer returns the number, or nil if the option was not given.
+func (o *numberOption) pointer() *float64 {
+	if !o.given {
+		return nil
+	}
+	return &o.value
+}
+
+func anyNumber() numberOption {
+	return numberOption{allowed: "a finite number", ok: func(float64) bool { return true }}
+}
+
+func positive() numberOption {
+	return numberOption{allowed: "a finite number above 0", ok: func(v float64) bool { return v > 0 }}
+}
+
+func nonNegative() numberOption {
+	return numberOption{allowed: "a finite number, 0 or more", ok: func(v float64) bool { return v >= 0 }}
+}
+
+func openUnit() numberOption {
+	return numberOption{allowed: "a number above 0 and below 1", ok: func(v float64) bool { return v > 0 && v < 1 }}
+}
+
+// integerOption is an option that takes one whole number from low to high.
+type integerOption struct {
+	value     int
+	given     bool
+	low, high int
+}
+
+func (o *integerOption) Set(text string) error {
+	v, err := strconv.Atoi(text)
+	if err != nil || v < o.low || v > o.high {
+		return fmt.Errorf("must be a whole number from %d to %d", o.low, o.high)
+	}
+	o.value, o.given = v, true
+	return nil
+}
+
+func (o *integerOption) Type() string { return "N" }
+
+func (o *integerOption) String() string {
+	if !o.given {
+		return ""
+	}
+	return strconv.Itoa(o.value)
+}
+
+// seedOption is a seed, any unsigned 64-bit number.
+type seedOption struct {
+	value uint64
+	given bool
+}
+
+func (o *seedOption) Set(text string) error {
+	v, err := strconv.ParseUint(text, 10, 64)
+	if err != nil {
+		return fmt.Errorf("must be a whole number from 0 to %d", uint64(math.MaxUint64))
+	}
+	o.value, o.given = v, true
+	return nil
+}
+
+func (o *seedOption) Type() string   { return "N" }
+func (o *seedOption) String() string { return "" }
+
+// durationOption is a positive span of time such as 60s or 5m.
+type durationOption struct {
+	value time.Duration
+	given bool
+}
+
+func (o *durationOption) Set(text string) error {
+	v, err := time.ParseDuration(text)
+	if err != nil || v <= 0 {
+		return errors.New("must be a time above 0 with its unit, such as 60s or 5m")
+	}
+	o.value, o.given = v, true
+	return nil
+}
+
+func (o *durationOption) Type() string   { return "TIME" }
+func (o *durationOption) String() string { return "" }
+
+// nameOption is one of a set of names.
+type nameOption struct {
+	value string
+	names []string
+}
+
+func (o *nameOption) Set(text string) error {
+	for _, name := range o.names {
+		if text == name {
+			o.value = text
+			return nil
+		}
+	}
+	return errors.New("must be " + listOf(o.names) + suggestion(text, o.names))
+}
+
+func (o *nameOption) Type() string   { return "NAME" }
+func (o *nameOption) String() string { return o.value }
+
+// degreesOption is a list of degrees, "2,3,8".
+type degreesOption struct {
+	degrees []int
+	low     int
+}
+
+func (o *degreesOption) Set(text string) error {
+	var degrees []int
+	for _, item := range strings.Split(text, ",") {
+		item = strings.TrimSpace(item)
+		n, err := strconv.Atoi(item)
+		if err != nil || strconv.Itoa(n) != item || n < o.low || n > ensembles.MaxDegree {
+			return fmt.Errorf("%q: must be whole numbers from %d to %d with commas between them, such as %d,%d,8",
+				item, o.low, ensembles.MaxDegree, o.low, o.low+1)
+		}
+		for _, d := range degrees {
+			if d == n {
+				return fmt.Errorf("degree %d: given twice", n)
+			}
+		}
+		degrees = append(degrees, n)
+	}
+	o.degrees = degrees
+	return nil
+}
+
+func (o *degreesOption) Type() string   { return "DEGREES" }
+func (o *degreesOption) String() string { return "" }
+
+// distributionOption is a degree distribution, "2:0.3,3:0.7".
+type distributionOption struct {
+	distribution ensembles.Distribution
+}
+
+func (o *distributionOption) Set(text string) error {
+	d, err := ensembles.ParseDistribution(text)
+	if err != nil {
+		return err
+	}
+	o.distribution = d
+	return nil
+}
+
+func (o *distributionOption) Type() string   { return "DEGREE:FRACTION,…" }
+func (o *distributionOption) String() string { return "" }
+
+// listOf joins names for a sentence: "a, b or c".
+func listOf(names []string) string {
+	if len(names) < 2 {
+		return strings.Join(names, "")
+	}
+	last := len(names) - 1
+	return strings.Join(names[:last], ", ") + " or " + names[last]
+}
+
+// flagError turns what the flag parser reports into one line that names the
+// option, the value found and what is allowed.
+func flagError(flags *pflag.FlagSet, err error) error {
+	var (
+		value   *pflag.InvalidValueError
+		missing *pflag.ValueRequiredError
+		unknown *pflag.NotExistError
+		syntax  *pflag.InvalidSyntaxError
+	)
+	switch {
+	case errors.As(err, &value):
+		return usagef("--%s %q: %w", value.GetFlag().Name, value.GetValue(), value.Unwrap())
+	case errors.As(err, &missing):
+		return usagef("--%s: needs a value", missing.GetFlag().Name)
+	case errors.As(err, &unknown) && unknown.GetSpecifiedShortnames() != "":
+		return usagef("-%s: unknown option", unknown.GetSpecifiedName())
+	case errors.As(err, &unknown):
+		var names []string
+		flags.VisitAll(func(f *pflag.Flag) { names = append(names, "--"+f.Name) })
+		name := "--" + unknown.GetSpecifiedName()
+		return usagef("%s: unknown option%s", name, suggestion(name, names))
+	case errors.As(err, &syntax):
+		return usagef("%s: not an option", syntax.GetSpecifiedFlag())
+	}
+	return usageError{err}
+}
+
+// maxTypos is how many letters a name may differ by and still be suggested.
+const maxTypos = 2
+
+// suggestion returns `; did you mean "…"?` for the name nearest to text, or
+// nothing if none is near.
+func suggestion(text string, names []string) string {
+	best, distance := "", maxTypos+1
+	for _, name := range names {
+		if d := typos(text, name); d < distance {
+			best, distance = name, d
+		}
+	}
+	if best == "" || distance >= len([]rune(text)) {
+		return ""
+	}
+	return fmt.Sprintf("; did you mean %s?", best)
+}
+
+// typos counts the letters to insert, delete or replace to turn a into b
+// (Levenshtein, Soviet Physics Doklady 10(8), 1966), row by row.
+func typos(a, b string) int {
+	x, y := []rune(a), []rune(b)
+	row := make([]int, len(y)+1)
+	for j := range row {
+		row[j] = j
+	}
+	for i := range x {
+		diagonal := row[0]
+		row[0] = i + 1
+		for j := range y {
+			cost := diagonal
+			if x[i] != y[j] {
+				cost++
+			}
+			diagonal = row[j+1]
+			row[j+1] = min(cost, row[j]+1, row[j+1]+1)
+		}
+	}
+	return row[len(y)]
+}
