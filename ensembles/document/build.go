@@ -1,0 +1,85 @@
+package document
+
+import (
+	"math"
+	"strconv"
+	"strings"
+
+	"gopkg.in/yaml.v3"
+)
+
+// Build makes a mapping to be written, field by field in order. The zero
+// value is an empty mapping.
+type Build struct{ node yaml.Node }
+
+// Node returns the mapping.
+func (b *Build) Node() *yaml.Node {
+	b.node.Kind, b.node.Tag = yaml.MappingNode, "!!map"
+	return &b.node
+}
+
+// Flow makes the mapping be written on one line.
+func (b *Build) Flow() *Build {
+	b.node.Style = yaml.FlowStyle
+	return b
+}
+
+// Add appends a key with its value.
+func (b *Build) Add(key string, value *yaml.Node) *Build {
+	b.node.Content = append(b.node.Content, textNode(key), value)
+	return b
+}
+
+// Text appends a key with text, quoted where it would be read as something
+// else.
+func (b *Build) Text(key, text string) *Build { return b.Add(key, textNode(text)) }
+
+// Int appends a key with a whole number.
+func (b *Build) Int(key string, n int) *Build { return b.Add(key, IntNode(n)) }
+
+// Float appends a key with a finite number.
+func (b *Build) Float(key string, x float64) *Build { return b.Add(key, FloatNode(x)) }
+
+// Entry appends a key of digits with its value.
+func (b *Build) Entry(key int, value *yaml.Node) *Build {
+	b.node.Content = append(b.node.Content, IntNode(key), value)
+	return b
+}
+
+// IntNode returns a whole number to be written.
+func IntNode(n int) *yaml.Node {
+	return &yaml.Node{Kind: yaml.ScalarNode, Tag: "!!int", Value: strconv.Itoa(n)}
+}
+
+// FloatNode returns a finite number to be written, with the fewest digits
+// that read back to the same bits.
+func FloatNode(x float64) *yaml.Node {
+	return &yaml.Node{Kind: yaml.ScalarNode, Tag: "!!float", Value: FormatFloat(x)}
+}
+
+// FormatFloat writes a finite number with the fewest digits that read back
+// to the same bits: without an exponent where a person would leave it out,
+// and otherwise in the one form (1.0e-09) that YAML 1.1, YAML 1.2 and JSON
+// all take for a number.
+func FormatFloat(x float64) string {
+	if magnitude := math.Abs(x); magnitude == 0 || magnitude >= 1e-7 && magnitude < 1e15 {
+		return strconv.FormatFloat(x, 'f', -1, 64)
+	}
+	text := strconv.FormatFloat(x, 'e', -1, 64)
+	if !strings.Contains(text, ".") {
+		text = strings.Replace(text, "e", ".0e", 1)
+	}
+	return text
+}
+
+// ListNode returns a list to be written.
+func ListNode(items ...*yaml.Node) *yaml.Node {
+	return &yaml.Node{Kind: yaml.SequenceNode, Tag: "!!seq", Content: items}
+}
+
+// Node returns the value to be written, nil for the zero Tree.
+func (t Tree) Node() *yaml.Node { return t.node }
+
+func textNode(text string) *yaml.Node {
+	return &yaml.Node{Kind: yaml.ScalarNode, Tag: "!!str", Value: text}
+}
