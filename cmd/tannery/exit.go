@@ -5,6 +5,7 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"strings"
 	"syscall"
 )
 
@@ -72,7 +73,9 @@ func exitCode(ctx context.Context, err error) int {
 // together.
 func printError(w io.Writer, err error) {
 	for _, problem := range problems(err) {
-		fmt.Fprintf(w, "tannery: %v\n", problem)
+		for line := range strings.Lines(problem.Error()) {
+			fmt.Fprintf(w, "tannery: %s\n", strings.TrimSuffix(line, "\n"))
+		}
 	}
 }
 

@@ -4,6 +4,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"slices"
 	"strconv"
 	"strings"
 	"time"
@@ -11,24 +12,24 @@ import (
 	"github.com/spf13/pflag"
 
 	"tannery/ensembles"
+	"tannery/ensembles/document"
 )
 
 // The option values below check what they are given while the command line
-// is read, so that a bad value is refused before anything else happens. An
+// is read, so that a bad value is refused before anything else happens. The
 // error of Set says what is allowed; flagError adds the option and the value.
 
 // numberOption is an option that takes one real number.
 type numberOption struct {
-	value   float64
-	given   bool
-	allowed string // in words, after "must be"
-	ok      func(float64) bool
+	value float64
+	given bool
+	allow document.Range
 }
 
 func (o *numberOption) Set(text string) error {
 	v, err := strconv.ParseFloat(text, 64)
-	if err != nil || math.IsNaN(v) || math.IsInf(v, 0) || !o.ok(v) {
-		return errors.New("must be " + o.allowed)
+	if err != nil || !o.allow.Contains(v) {
+		return errors.New(o.allow.String())
 	}
 	o.value, o.given = v, true
 	return nil
@@ -43,30 +44,6 @@ func (o *numberOption) String() string {
 	return strconv.FormatFloat(o.value, 'g', -1, 64)
 }
 
-// pointer returns the number, or nil if the option was not given.
-func (o *numberOption) pointer() *float64 {
-	if !o.given {
-		return nil
-	}
-	return &o.value
-}
-
-func anyNumber() numberOption {
-	return numberOption{allowed: "a finite number", ok: func(float64) bool { return true }}
-}
-
-func positive() numberOption {
-	return numberOption{allowed: "a finite number above 0", ok: func(v float64) bool { return v > 0 }}
-}
-
-func nonNegative() numberOption {
-	return numberOption{allowed: "a finite number, 0 or more", ok: func(v float64) bool { return v >= 0 }}
-}
-
-func openUnit() numberOption {
-	return numberOption{allowed: "a number above 0 and below 1", ok: func(v float64) bool { return v > 0 && v < 1 }}
-}
-
 // integerOption is an option that takes one whole number from low to high.
 type integerOption struct {
 	value     int
@@ -77,7 +54,7 @@ type integerOption struct {
 func (o *integerOption) Set(text string) error {
 	v, err := strconv.Atoi(text)
 	if err != nil || v < o.low || v > o.high {
-		return fmt.Errorf("must be a whole number from %d to %d", o.low, o.high)
+		return fmt.Errorf("a whole number from %d to %d", o.low, o.high)
 	}
 	o.value, o.given = v, true
 	return nil
@@ -101,7 +78,7 @@ type seedOption struct {
 func (o *seedOption) Set(text string) error {
 	v, err := strconv.ParseUint(text, 10, 64)
 	if err != nil {
-		return fmt.Errorf("must be a whole number from 0 to %d", uint64(math.MaxUint64))
+		return fmt.Errorf("a whole number from 0 to %d", uint64(math.MaxUint64))
 	}
 	o.value, o.given = v, true
 	return nil
@@ -119,7 +96,7 @@ type durationOption struct {
 func (o *durationOption) Set(text string) error {
 	v, err := time.ParseDuration(text)
 	if err != nil || v <= 0 {
-		return errors.New("must be a time above 0 with its unit, such as 60s or 5m")
+		return errors.New("a time above 0 with its unit, such as 60s or 5m")
 	}
 	o.value, o.given = v, true
 	return nil
@@ -141,7 +118,7 @@ func (o *nameOption) Set(text string) error {
 			return nil
 		}
 	}
-	return errors.New("must be " + listOf(o.names) + suggestion(text, o.names))
+	return errors.New(listOf(o.names) + suggestion(text, o.names))
 }
 
 func (o *nameOption) Type() string   { return "NAME" }
@@ -158,14 +135,9 @@ func (o *degreesOption) Set(text string) error {
 	for _, item := range strings.Split(text, ",") {
 		item = strings.TrimSpace(item)
 		n, err := strconv.Atoi(item)
-		if err != nil || strconv.Itoa(n) != item || n < o.low || n > ensembles.MaxDegree {
-			return fmt.Errorf("%q: must be whole numbers from %d to %d with commas between them, such as %d,%d,8",
-				item, o.low, ensembles.MaxDegree, o.low, o.low+1)
-		}
-		for _, d := range degrees {
-			if d == n {
-				return fmt.Errorf("degree %d: given twice", n)
-			}
+		if err != nil || strconv.Itoa(n) != item || n < o.low || n > ensembles.MaxDegree || slices.Contains(degrees, n) {
+			return fmt.Errorf("different whole numbers from %d to %d with commas between them, such as %d,%d,8",
+				o.low, ensembles.MaxDegree, o.low, o.low+1)
 		}
 		degrees = append(degrees, n)
 	}
@@ -213,7 +185,10 @@ func flagError(flags *pflag.FlagSet, err error) error {
 	)
 	switch {
 	case errors.As(err, &value):
-		return usagef("--%s %q: %w", value.GetFlag().Name, value.GetValue(), value.Unwrap())
+		if value.GetFlag().Value.Type() == (*distributionOption)(nil).Type() {
+			return usagef("--%s: %w", value.GetFlag().Name, value.Unwrap())
+		}
+		return usagef("--%s: found %q; allowed: %w", value.GetFlag().Name, value.GetValue(), value.Unwrap())
 	case errors.As(err, &missing):
 		return usagef("--%s: needs a value", missing.GetFlag().Name)
 	case errors.As(err, &unknown) && unknown.GetSpecifiedShortnames() != "":
