@@ -4,6 +4,8 @@ import (
 	"math"
 	"strconv"
 	"strings"
+	"time"
+	"unicode"
 
 	"gopkg.in/yaml.v3"
 )
@@ -37,6 +39,16 @@ func (b *Build) Text(key, text string) *Build { return b.Add(key, textNode(text)
 // Int appends a key with a whole number.
 func (b *Build) Int(key string, n int) *Build { return b.Add(key, IntNode(n)) }
 
+// Uint64 appends a key with a whole number, such as a seed.
+func (b *Build) Uint64(key string, n uint64) *Build {
+	return b.Add(key, &yaml.Node{Kind: yaml.ScalarNode, Value: strconv.FormatUint(n, 10)})
+}
+
+// Time appends a key with a point in time in the form of RFC 3339.
+func (b *Build) Time(key string, t time.Time) *Build {
+	return b.Add(key, &yaml.Node{Kind: yaml.ScalarNode, Value: t.Format(time.RFC3339Nano)})
+}
+
 // Float appends a key with a finite number.
 func (b *Build) Float(key string, x float64) *Build { return b.Add(key, FloatNode(x)) }
 
@@ -48,13 +60,13 @@ func (b *Build) Entry(key int, value *yaml.Node) *Build {
 
 // IntNode returns a whole number to be written.
 func IntNode(n int) *yaml.Node {
-	return &yaml.Node{Kind: yaml.ScalarNode, Tag: "!!int", Value: strconv.Itoa(n)}
+	return &yaml.Node{Kind: yaml.ScalarNode, Value: strconv.Itoa(n)}
 }
 
 // FloatNode returns a finite number to be written, with the fewest digits
 // that read back to the same bits.
 func FloatNode(x float64) *yaml.Node {
-	return &yaml.Node{Kind: yaml.ScalarNode, Tag: "!!float", Value: FormatFloat(x)}
+	return &yaml.Node{Kind: yaml.ScalarNode, Value: FormatFloat(x)}
 }
 
 // FormatFloat writes a finite number with the fewest digits that read back
@@ -80,6 +92,12 @@ func ListNode(items ...*yaml.Node) *yaml.Node {
 // Node returns the value to be written, nil for the zero Tree.
 func (t Tree) Node() *yaml.Node { return t.node }
 
+// textNode quotes what the YAML library would write in a form that it does
+// not always read back: text of several lines, or with blanks at an end.
 func textNode(text string) *yaml.Node {
-	return &yaml.Node{Kind: yaml.ScalarNode, Tag: "!!str", Value: text}
+	n := &yaml.Node{Kind: yaml.ScalarNode, Tag: "!!str", Value: text}
+	if strings.TrimSpace(text) != text || strings.ContainsFunc(text, func(r rune) bool { return !unicode.IsPrint(r) }) {
+		n.Style = yaml.DoubleQuotedStyle
+	}
+	return n
 }

@@ -118,10 +118,9 @@ func (d *Document) Root() *Mapping {
 // the only thing reported about its contents.
 func (d *Document) Kind(kind string, version int) *Mapping {
 	m := d.Root()
-	before := len(d.problems)
 	stated := m.Required("kind")
 	stated.Choice(kind)
-	if stated.Present() && len(d.problems) > before {
+	if stated.Present() && stated.Faulty() {
 		d.mappings = nil
 		return &Mapping{}
 	}

@@ -27,10 +27,9 @@ func (v Value) Ints(low, high int) []int {
 	var out []int
 	seen := map[int]bool{}
 	for _, item := range list {
-		before := len(v.doc.problems)
 		n := item.Int(low, high)
 		switch {
-		case len(v.doc.problems) > before || v.doc.refused[item.node]:
+		case item.Faulty():
 		case seen[n]:
 			item.Refuse(fmt.Sprintf("%d a second time", n), "each number once")
 		default:

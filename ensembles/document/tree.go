@@ -72,9 +72,16 @@ func (t Tree) MarshalJSON() ([]byte, error) {
 }
 
 // clean copies a node without positions and comments. Flow mappings and
-// lists stay so.
+// lists stay so; texts in blocks become quoted.
 func clean(n *yaml.Node) *yaml.Node {
 	c := &yaml.Node{Kind: n.Kind, Style: n.Style &^ yaml.TaggedStyle, Tag: n.Tag, Value: n.Value}
+	switch {
+	case n.Kind != yaml.ScalarNode:
+	case n.Style&quotedStyles == 0:
+		c.Tag = "" // follows from the text
+	case n.Style&(yaml.LiteralStyle|yaml.FoldedStyle) != 0:
+		c.Style = yaml.DoubleQuotedStyle
+	}
 	for _, child := range n.Content {
 		c.Content = append(c.Content, clean(child))
 	}

@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"strings"
 	"time"
+	"unicode"
 
 	"gopkg.in/yaml.v3"
 )
@@ -23,6 +24,11 @@ type Value struct {
 // Present tells whether the value is there; it may still be wrong.
 func (v Value) Present() bool { return v.node != nil }
 
+// Faulty tells whether a problem of the value itself was reported already.
+func (v Value) Faulty() bool {
+	return v.doc == nil || v.doc.refused[v.node]
+}
+
 // Key returns the dotted path of the value, as shown in messages.
 func (v Value) Key() string { return v.path }
 
@@ -34,6 +40,9 @@ func (v Value) Refuse(found, allowed string) {
 	}
 	line, column := v.position()
 	v.doc.report(Problem{Line: line, Column: column, Key: v.path, Found: found, Allowed: allowed})
+	if v.node != nil {
+		v.doc.refused[v.node] = true
+	}
 }
 
 // RefuseAsIs reports the value as it stands in the file, or as missing.
@@ -109,6 +118,20 @@ func (v Value) String() string {
 	return v.node.Value
 }
 
+// Word returns text without spaces or control characters, such as a name.
+func (v Value) Word() string {
+	const allowed = "a word"
+	if !v.expect(yaml.ScalarNode, allowed) {
+		return ""
+	}
+	text := v.node.Value
+	if v.node.Tag == "!!null" || text == "" || strings.ContainsFunc(text, func(r rune) bool { return unicode.IsSpace(r) || !unicode.IsPrint(r) }) {
+		v.refuse(allowed)
+		return ""
+	}
+	return text
+}
+
 // Choice returns one of the words allowed.
 func (v Value) Choice(allowed ...string) string {
 	list := strings.Join(allowed, ", ")
@@ -150,15 +173,17 @@ func (v Value) Duration(low, high time.Duration) time.Duration {
 	return d
 }
 
-// Time returns a point in time in the form of RFC 3339.
+// Time returns a point in time, written in the form of RFC 3339, in UTC.
 func (v Value) Time() time.Time {
 	const allowed = "a time such as 2026-12-01T10:00:00Z"
 	if !v.expect(yaml.ScalarNode, allowed) {
 		return time.Time{}
 	}
 	t, err := time.Parse(time.RFC3339, v.node.Value)
-	if err != nil {
+	t = t.UTC()
+	if err != nil || t.Year() < 0 || t.Year() > 9999 {
 		v.refuse(allowed)
+		return time.Time{}
 	}
 	return t
 }
