@@ -44,6 +44,14 @@ func (o *numberOption) String() string {
 	return strconv.FormatFloat(o.value, 'g', -1, 64)
 }
 
+// pointer returns the number, or nil if the option was not given.
+func (o *numberOption) pointer() *float64 {
+	if !o.given {
+		return nil
+	}
+	return &o.value
+}
+
 // integerOption is an option that takes one whole number from low to high.
 type integerOption struct {
 	value     int

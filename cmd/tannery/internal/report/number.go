@@ -35,6 +35,14 @@ func Significant(v float64, digits int) string {
 	return Fixed(v, max(0, decimals))
 }
 
+// Plain returns a number given by the user as short as it can be written.
+func Plain(v float64) string {
+	if a := math.Abs(v); a != 0 && (a < 1e-4 || a >= 1e15) {
+		return strconv.FormatFloat(v, 'g', -1, 64)
+	}
+	return strconv.FormatFloat(v, 'f', -1, 64)
+}
+
 // WithUncertainty returns "v ± u", v to the decimal place at which u has its
 // first digit, u rounded up to that digit.
 func WithUncertainty(v, u float64) string {

@@ -11,7 +11,7 @@ import (
 const Width = 80
 
 // labelWidth is the column at which values begin.
-const labelWidth = 22
+const labelWidth = 26
 
 // Text is a text for people under construction: headings, rows of a label
 // and a value, and tables, all within Width columns.

@@ -1,0 +1,140 @@
+package main
+
+import (
+	"fmt"
+	"math"
+
+	"github.com/spf13/cobra"
+
+	"tannery/de/channel"
+	"tannery/ensembles/document"
+)
+
+// maxDB bounds signal-to-noise ratios in dB: beyond it a channel is perfect
+// or useless to the last bit.
+const maxDB = 100
+
+// parameterOptions say which channel is meant: its family and one parameter,
+// or a signal-to-noise ratio where that fixes it.
+type parameterOptions struct {
+	channel   nameOption
+	parameter numberOption
+	ebN0      numberOption
+	esN0      numberOption
+}
+
+func (o *parameterOptions) addChannel(cmd *cobra.Command, usage string) {
+	o.channel.names = channel.Names()
+	cmd.Flags().Var(&o.channel, "channel", usage)
+	complete(cmd, "channel", o.channel.names)
+}
+
+func (o *parameterOptions) addParameter(cmd *cobra.Command) {
+	o.parameter.allow = document.AtLeast(0)
+	o.ebN0.allow = document.FromTo(-maxDB, maxDB)
+	o.esN0.allow = o.ebN0.allow
+	cmd.Flags().Var(&o.parameter, "parameter", "channel parameter: ε of bec, p of bsc, σ of biawgn and rayleigh, scale b of laplace")
+	cmd.Flags().Var(&o.ebN0, "eb-n0", "Eb/N0 in dB instead (biawgn; rayleigh: mean)")
+	cmd.Flags().Var(&o.esN0, "es-n0", "Es/N0 in dB instead (biawgn; rayleigh: mean)")
+}
+
+// family returns the family asked for.
+func (o *parameterOptions) family() (channel.Family, error) {
+	if o.channel.value == "" {
+		return nil, usagef("--channel: missing; allowed: %s", listOf(o.channel.names))
+	}
+	f, err := channel.ByName(o.channel.value)
+	return f, invalid(err)
+}
+
+// given tells whether a parameter was given in any form.
+func (o *parameterOptions) given() bool {
+	return o.parameter.given || o.ebN0.given || o.esN0.given
+}
+
+// value returns the channel parameter. Eb/N0 needs a rate in information
+// bits per code bit; rate is 0 if there is none.
+func (o *parameterOptions) value(f channel.Family, rate float64) (float64, error) {
+	if !o.parameter.given {
+		return o.fromRatio(f, rate)
+	}
+	best, worst := f.Range()
+	allowed := document.Range{Low: best, High: worst, OpenLow: !hasBestChannel(f), OpenHigh: math.IsInf(worst, 1)}
+	if !allowed.Contains(o.parameter.value) {
+		return 0, usagef("--parameter: found %v; allowed: for %s of channel %s, %v", o.parameter.value, f.Symbol(), f.Name(), allowed)
+	}
+	return o.parameter.value, nil
+}
+
+// hasBestChannel tells whether the perfect channel is itself a member of the
+// family, as for erasures and flips, and not only a limit, as for noise.
+func hasBestChannel(f channel.Family) bool {
+	_, worst := f.Range()
+	return !math.IsInf(worst, 1)
+}
+
+func (o *parameterOptions) fromRatio(f channel.Family, rate float64) (float64, error) {
+	option, db := "--es-n0", o.esN0.value
+	if o.ebN0.given {
+		option, db = "--eb-n0", o.ebN0.value
+	}
+	if !hasRatio(f) {
+		return 0, usagef("%s: does not fit channel %s; allowed: --parameter, its %s", option, f.Name(), f.Symbol())
+	}
+	if !o.ebN0.given {
+		return channel.SigmaFromEsN0DB(db), nil
+	}
+	if !(rate > 0) {
+		return 0, usagef("--eb-n0: needs a rate above 0, because Eb = Es/rate; allowed: --rate beside it, or --es-n0")
+	}
+	return channel.SigmaFromEbN0DB(db, rate), nil
+}
+
+// hasRatio tells whether the family's parameter is a noise deviation σ with
+// which Es/N0 = 1/(2σ²).
+func hasRatio(f channel.Family) bool { return f.Parameter() == channel.BIAWGN{}.Parameter() }
+
+// ratios returns Eb/N0 and Es/N0 in dB, nil where the family has none or the
+// rate is not positive.
+func ratios(f channel.Family, parameter, rate float64) (ebN0, esN0 *float64) {
+	if !hasRatio(f) || !(parameter > 0) {
+		return nil, nil
+	}
+	es := channel.EsN0DB(parameter)
+	if rate > 0 {
+		eb := channel.EbN0DB(parameter, rate)
+		ebN0 = &eb
+	}
+	return ebN0, &es
+}
+
+// complete offers names for the value of an option to the shell.
+func complete(cmd *cobra.Command, option string, names []string) {
+	err := cmd.RegisterFlagCompletionFunc(option, func(*cobra.Command, []string, string) ([]string, cobra.ShellCompDirective) {
+		return names, cobra.ShellCompDirectiveNoFileComp
+	})
+	if err != nil {
+		panic(fmt.Sprintf("completion of --%s: %v", option, err)) // an option that does not exist
+	}
+}
+
+// checkParameter refuses two forms of the parameter at once.
+func (o *parameterOptions) checkParameter(cmd *cobra.Command) error {
+	if err := exclusive(cmd, "parameter", "eb-n0", "es-n0"); err != nil {
+		return err
+	}
+	return exclusive(cmd, "eb-n0", "es-n0")
+}
+
+// exclusive refuses the first option beside any of the others.
+func exclusive(cmd *cobra.Command, option string, others ...string) error {
+	if !cmd.Flags().Changed(option) {
+		return nil
+	}
+	for _, other := range others {
+		if cmd.Flags().Changed(other) {
+			return usagef("--%s and --%s: only one of the two", option, other)
+		}
+	}
+	return nil
+}
