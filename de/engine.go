@@ -2,6 +2,7 @@ package de
 
 import (
 	"fmt"
+	"maps"
 	"slices"
 	"strings"
 
@@ -42,4 +43,50 @@ func checkParameter(f channel.Family, parameter float64) error {
 		return fmt.Errorf("%s %v of channel %s: must be from %v to %v", f.Parameter(), parameter, f.Name(), best, worst)
 	}
 	return nil
+}
+
+// engines lists the engine of each method.
+var engines = map[Method]Engine{
+	Exact:       ExactEngine{},
+	Gaussian:    GaussianEngine{},
+	GaussianFit: GaussianFitEngine{},
+}
+
+// defaults lists the methods in the order of preference with the channels on
+// which each is the most exact one: the first that fits is the default. An
+// empty list stands for every channel.
+var defaults = []struct {
+	method   Method
+	channels []string
+}{
+	{Exact, []string{bec}},
+	{Gaussian, []string{biawgn}},
+}
+
+// Methods returns the methods that EngineFor knows, in alphabetical order.
+func Methods() []Method {
+	return slices.Sorted(maps.Keys(engines))
+}
+
+// EngineFor returns the engine of a method, which is one of Methods.
+func EngineFor(method Method) (Engine, error) {
+	if e, ok := engines[method]; ok {
+		return e, nil
+	}
+	known := make([]string, 0, len(engines))
+	for _, m := range Methods() {
+		known = append(known, string(m))
+	}
+	return nil, fmt.Errorf("method %q: must be one of %s", method, strings.Join(known, ", "))
+}
+
+// DefaultMethod returns the most exact method that covers the family, "" if
+// none does.
+func DefaultMethod(f channel.Family) Method {
+	for _, d := range defaults {
+		if len(d.channels) == 0 || slices.Contains(d.channels, f.Name()) {
+			return d.method
+		}
+	}
+	return ""
 }

@@ -28,7 +28,9 @@ const gaussianUncertainty = 1e-10
 
 // Threshold returns the largest σ at which the approximation converges,
 // √(2/s) for the largest s that any r asks for (see gaussian_tunnel.go),
-// or the bound of the true stability condition if that is smaller. Critical
+// or the bound of the true stability condition if that is smaller. Where the
+// approximation converges for every s the value is +Inf, with a warning; this
+// happens to ensembles of low rate with checks of degree 2. Critical
 // lists the places where the tunnel closes. Iterations counts the equations
 // solved.
 func (GaussianEngine) Threshold(ctx context.Context, e ensembles.Ensemble, f channel.Family) (Threshold, error) {
@@ -60,6 +62,9 @@ func (GaussianEngine) Threshold(ctx context.Context, e ensembles.Ensemble, f cha
 			out.Critical = append(out.Critical, Critical{Entropy: state.entropy(e.Lambda, f), Slack: slack})
 		}
 	}
+	if t.best.s == 0 {
+		out.Warnings = append(out.Warnings, "the approximation converges on every channel, however bad: it does not hold for this ensemble")
+	}
 	return enforceStability(out, e, f), nil
 }
 
@@ -80,7 +85,7 @@ func enforceStability(t Threshold, e ensembles.Ensemble, f channel.Family) Thres
 		t.Critical = slices.DeleteFunc(t.Critical, func(c Critical) bool { return c.Slack > criticalSlack })
 	}
 	t.Value = value
-	if slack := bound/value - 1; slack <= criticalSlack {
+	if slack := bound/value - 1; slack <= criticalSlack { // not NaN, of two infinities
 		i, _ := slices.BinarySearchFunc(t.Critical, slack, func(c Critical, s float64) int {
 			if c.Slack < s {
 				return -1
@@ -89,7 +94,9 @@ func enforceStability(t Threshold, e ensembles.Ensemble, f channel.Family) Thres
 		})
 		t.Critical = slices.Insert(t.Critical, i, Critical{Entropy: 0, Slack: slack})
 	}
-	t.Uncertainty = math.Max(t.Uncertainty, value*gaussianUncertainty)
+	if !math.IsInf(value, 1) {
+		t.Uncertainty = math.Max(t.Uncertainty, value*gaussianUncertainty)
+	}
 	return t
 }
 
