@@ -82,7 +82,7 @@ func normalise(masses []float64) (normalised []float64, warning string, ok bool)
 	for _, p := range masses {
 		sum += p
 	}
-	if !(math.Abs(sum-1) <= RowTolerance) {
+	if !(math.Abs(sum-1) <= RowTolerance+roundingTolerance) {
 		return nil, fmt.Sprintf("a sum of %.9g", sum), false
 	}
 	if math.Abs(sum-1) > roundingTolerance {
