@@ -84,7 +84,10 @@ func Excess(terms []Term) float64 {
 // Normalize returns the terms, which must be sorted by degree and have
 // positive fractions, divided by the sum of their fractions.
 func Normalize(terms []Term) Distribution {
-	sum := 1 + Excess(terms)
+	var sum float64
+	for _, t := range terms {
+		sum += t.Fraction
+	}
 	d := slices.Clone(terms)
 	for i := range d {
 		d[i].Fraction /= sum

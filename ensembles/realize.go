@@ -67,7 +67,7 @@ func Realize(e Ensemble, length int, score func(Ensemble) float64) (Realization,
 	}
 	candidates := candidatesOf(variable, check, length, checks)
 	if len(candidates) == 0 {
-		return Realization{}, fmt.Errorf("length %d: there is no graph with these degrees in which no two nodes are joined twice; use a greater length or smaller degrees", length)
+		return Realization{}, fmt.Errorf("length %d: no whole numbers of nodes with these degrees make a graph in which no two nodes are joined twice; use a greater length or smaller degrees", length)
 	}
 	chosen := candidates[0]
 	if score != nil {

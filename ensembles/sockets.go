@@ -147,27 +147,20 @@ func (n nodes) costOf(i, count, change int) float64 {
 const maxForeign = 64
 
 // matchWithNeighbour returns counts that match with the help of one degree
-// next to a degree of n, with as few nodes of it as possible; where the mean
-// degree is out of its reach or n has one degree, of the two whole numbers
-// around the mean. least is the smallest degree allowed.
+// next to a degree of n, with as few nodes of it as possible. Where n has one
+// degree, or the mean is too far below or above its degrees for that, they
+// are concentrated on the two whole numbers around the mean. least is the smallest degree
+// allowed.
 func (n nodes) matchWithNeighbour(total, sockets, least int) []Counts {
-	var out []Counts
-	last := len(n.degree) - 1
-	if low := sockets / total; low >= least {
-		above := sockets - low*total
-		concentrated := nodes{[]int{low, low + 1}, nil}
-		out = append(out, concentrated.counts([]int{total - above, above}))
-	}
-	if last == 0 {
-		return out
-	}
 	var neighbours []int
 	for _, degree := range n.degree {
 		neighbours = append(neighbours, degree-1, degree+1)
 	}
 	slices.Sort(neighbours)
+	last := len(n.degree) - 1
+	var out []Counts
 	for _, foreign := range slices.Compact(neighbours) {
-		if foreign < least || slices.Contains(n.degree, foreign) {
+		if last == 0 || foreign < least || slices.Contains(n.degree, foreign) {
 			continue
 		}
 		// The rest must have a mean within the degrees of n.
@@ -180,6 +173,12 @@ func (n nodes) matchWithNeighbour(total, sockets, least int) []Counts {
 				break
 			}
 		}
+	}
+	inside := sockets > n.degree[0]*total && sockets < n.degree[last]*total
+	if low := sockets / total; len(out) == 0 && !inside && low >= least {
+		above := sockets - low*total
+		concentrated := nodes{degree: []int{low, low + 1}}
+		out = append(out, concentrated.counts([]int{total - above, above}))
 	}
 	return out
 }

@@ -25,7 +25,7 @@ func cheapestSubsets(costs []float64, size, limit int) [][]int {
 		order[i] = i
 	}
 	slices.SortStableFunc(order, func(a, b int) int { return cmp.Compare(costs[a], costs[b]) })
-	if size < 0 || size > len(costs) {
+	if size < 0 || size > len(costs) || limit < 1 {
 		return nil
 	}
 	if size == 0 {
