@@ -7,6 +7,7 @@ import (
 	"github.com/spf13/cobra"
 
 	"tannery/de/channel"
+	"tannery/ensembles"
 	"tannery/ensembles/document"
 )
 
@@ -137,4 +138,21 @@ func exclusive(cmd *cobra.Command, option string, others ...string) error {
 		}
 	}
 	return nil
+}
+
+// familyOf returns the family asked for, or else the one that the results of
+// the profile name.
+func (o *parameterOptions) familyOf(p ensembles.Profile) (channel.Family, error) {
+	if o.channel.value != "" {
+		return o.family()
+	}
+	name := channelOf(p)
+	if name == "" {
+		return nil, usagef("--channel: missing, and the profile's results do not name exactly one; allowed: %s", listOf(o.channel.names))
+	}
+	f, err := channel.ByName(name)
+	if err != nil {
+		return nil, usagef("results of the profile: %w", err)
+	}
+	return f, nil
 }

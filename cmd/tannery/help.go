@@ -15,7 +15,9 @@ import (
 // works, and only then the list of options.
 func printHelp(cmd *cobra.Command, _ []string) {
 	var b strings.Builder
-	fmt.Fprintf(&b, "%s: %s\n", cmd.CommandPath(), cmd.Short)
+	for _, line := range report.Wrap(cmd.CommandPath()+": "+cmd.Short, report.Width) {
+		fmt.Fprintln(&b, line)
+	}
 	if cmd.Example != "" {
 		b.WriteString("\nExamples\n")
 		for _, line := range strings.Split(cmd.Example, "\n") {

@@ -30,7 +30,7 @@ func succeed(t *testing.T, stdin string, args ...string) string {
 
 func TestUnknownNamesAreSuggested(t *testing.T) {
 	for _, c := range []struct{ args, want string }{
-		{"serch", "tannery: serch: unknown command; did you mean search?; tannery --help lists them\n"},
+		{"exprot", "tannery: exprot: unknown command; did you mean export?; tannery --help lists them\n"},
 		{"frobnicate", "tannery: frobnicate: unknown command; tannery --help lists them\n"},
 		{"limit --chanel bec", "tannery: --chanel: unknown option; did you mean --channel?\n"},
 		{"limit -z", "tannery: -z: unknown option\n"},

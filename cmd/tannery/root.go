@@ -24,7 +24,8 @@ and SIGTERM; 141 when the reader of standard output went away.`,
 		Example: `# which channel can carry rate 1/2 at all?
 tannery limit --channel biawgn --rate 0.5
 # the best profile for it, found by density evolution and linear programmes
-tannery search --channel biawgn --rate 0.5 --max-variable-degree 15 -o link.yaml
+tannery search --channel biawgn --rate 0.5 --max-variable-degree 15 \
+    -o link.yaml
 # exact node counts for 64800 code bits
 tannery export link.yaml --length 64800 -o link-64800.yaml`,
 		Version:       version,

@@ -45,9 +45,14 @@ func (d *Draft) refuse(key, found, allowed string) {
 }
 
 // missing reports that neither the file nor an option gives a value.
+// A value that is there but wrong was reported when it was read.
 func (d *Draft) missing(key, option, allowed string) {
-	if value, ok := d.file[key]; ok {
+	value, ok := d.file[key]
+	switch {
+	case ok && !value.Present():
 		value.Refuse("", allowed+"; or the option "+option)
+		return
+	case d.doc != nil:
 		return
 	}
 	d.problems = append(d.problems, fmt.Errorf("%s: missing; allowed: %s", option, allowed))
@@ -75,9 +80,7 @@ func (d *Draft) Err() error {
 
 func (d *Draft) checkChannel() channel.Family {
 	if d.Channel == "" {
-		if !d.failed() {
-			d.missing("channel", "--channel", listOf(channel.Names()))
-		}
+		d.missing("channel", "--channel", listOf(channel.Names()))
 		return nil
 	}
 	family, err := channel.ByName(d.Channel)
@@ -87,18 +90,12 @@ func (d *Draft) checkChannel() channel.Family {
 	return family
 }
 
-// failed tells whether there are problems already, so that no second one
-// follows from the first.
-func (d *Draft) failed() bool { return d.Err() != nil }
-
 // checkRate makes sure that there is a rate, from the link if there is one.
 func (d *Draft) checkRate(family channel.Family) {
 	switch {
 	case d.Link == nil && d.Rate == 0:
-		if !d.failed() {
-			d.missing("rate", "--rate", document.Between(0, 1).String())
-		}
-	case d.Link != nil && !d.failed():
+		d.missing("rate", "--rate", document.Between(0, 1).String())
+	case d.Link != nil && d.Err() == nil:
 		l := d.Link
 		d.Rate = l.SourceRate * channel.BinaryEntropy(l.SourceProbability) / l.SymbolRate
 		capacity := family.Capacity(l.Parameter)

@@ -75,7 +75,7 @@ func (l *Limit) WriteText(w io.Writer) error {
 	case l.Question != nil:
 		l.questionText(&t)
 	case l.Rate == l.Capacity:
-		t.Heading("Capacity of %s at %s = %s", l.Channel, l.Symbol, l.given())
+		t.Heading("Capacity of %s at %s = %s", l.Channel, l.Symbol, short(*l.Value))
 		t.Row("capacity", "%s bits per channel use", Significant(*l.Capacity, rateDigits))
 		ratioRows(&t, "Eb/N0 at this rate", l.EbN0DB, l.EsN0DB)
 	default:
@@ -98,15 +98,6 @@ func (l *Limit) parameterName() string {
 	return l.Parameter + " " + l.Symbol
 }
 
-// given is the channel parameter as asked for: short if it was typed, and
-// rounded if it follows from a ratio in dB.
-func (l *Limit) given() string {
-	if short := Plain(*l.Value); len(short) <= valueDigits+2 {
-		return short
-	}
-	return Significant(*l.Value, valueDigits)
-}
-
 func ratioRows(t *Text, label string, ebN0, esN0 *float64) {
 	if ebN0 != nil {
 		t.Row(label, "%s dB", Fixed(*ebN0, 4))
@@ -118,7 +109,7 @@ func ratioRows(t *Text, label string, ebN0, esN0 *float64) {
 
 func (l *Limit) questionText(t *Text) {
 	q := l.Question
-	t.Heading("Rate %s on %s at %s = %s", Plain(*l.Rate), l.Channel, l.Symbol, l.given())
+	t.Heading("Rate %s on %s at %s = %s", Plain(*l.Rate), l.Channel, l.Symbol, short(*l.Value))
 	t.Row("capacity", "%s bits per channel use", Significant(*l.Capacity, rateDigits))
 	if q.Fits {
 		t.Row("rate", "below capacity by %s bits per channel use", Significant(q.Margin, 4))
@@ -143,20 +134,20 @@ func (l *Limit) linkText(t *Text) {
 		t.Heading("The source does not fit the channel")
 	}
 	t.Row("source", "%s bits per second, ones with probability %s", Plain(k.SourceRate), Plain(k.SourceProbability))
-	t.Row("source entropy", "%s bits per bit, %s bits per second", Significant(k.SourceEntropy, rateDigits), Significant(k.EntropyRate, rateDigits))
+	t.Row("source entropy", "%s bits per bit, %s bits per second", Trimmed(k.SourceEntropy, rateDigits), Significant(k.EntropyRate, rateDigits))
 	if l.Value != nil {
-		t.Row("channel", "%s at %s = %s, %s symbols per second", l.Channel, l.Symbol, l.given(), Plain(k.SymbolRate))
+		t.Row("channel", "%s at %s = %s, %s symbols per second", l.Channel, l.Symbol, short(*l.Value), Plain(k.SymbolRate))
 	} else {
 		t.Row("channel", "%s, %s symbols per second", l.Channel, Plain(k.SymbolRate))
 	}
 	t.Row("capacity", "%s bits per symbol, %s bits per second", Significant(*l.Capacity, rateDigits), Significant(k.CapacityRate, rateDigits))
 	t.Row("largest code rate", "%s bits per symbol", Significant(k.LargestCodeRate, rateDigits))
-	t.Row("code rate needed", "%s for the source compressed, %s as it is", Significant(k.CodeRate, rateDigits), Significant(k.RawCodeRate, rateDigits))
+	t.Row("code rate needed", "%s for the source compressed, %s as it is", Trimmed(k.CodeRate, rateDigits), Trimmed(k.RawCodeRate, rateDigits))
 	t.Row("margin", "%s bits per symbol, %s bits per second", Significant(k.Margin, 4), Significant(k.MarginRate, 4))
 	if !k.Fits {
 		t.Row("lowest bit error rate", "%s of the source bits, for anybody", Significant(k.LowestBitErrorRate, 4))
 	}
-	ratioRows(t, "Eb/N0 at the rate needed", l.EbN0DB, l.EsN0DB)
+	ratioRows(t, "Eb/N0 at needed rate", l.EbN0DB, l.EsN0DB)
 }
 
 func (l *Limit) finiteText(t *Text) {

@@ -4,13 +4,14 @@ import (
 	"fmt"
 	"math"
 	"strconv"
+	"strings"
 )
 
 // Rounding for people is kept apart from precision for machines: JSON, CSV
 // and YAML carry every digit, these functions only what a reader can use.
 
 // maxDecimals is the largest number of digits after the point in a text.
-const maxDecimals = 12
+const maxDecimals = 9
 
 // Fixed returns v with the given number of digits after the point, without
 // a minus sign on zero.
@@ -38,9 +39,19 @@ func Significant(v float64, digits int) string {
 // Plain returns a number given by the user as short as it can be written.
 func Plain(v float64) string {
 	if a := math.Abs(v); a != 0 && (a < 1e-4 || a >= 1e15) {
-		return strconv.FormatFloat(v, 'g', -1, 64)
+		return strings.Replace(strconv.FormatFloat(v, 'g', -1, 64), "e-0", "e-", 1)
 	}
 	return strconv.FormatFloat(v, 'f', -1, 64)
+}
+
+// Trimmed returns v with at most the given number of digits after the point,
+// without zeros at the end.
+func Trimmed(v float64, decimals int) string {
+	s := Fixed(v, decimals)
+	if strings.Contains(s, ".") {
+		s = strings.TrimSuffix(strings.TrimRight(s, "0"), ".")
+	}
+	return s
 }
 
 // WithUncertainty returns "v ± u", v to the decimal place at which u has its
@@ -61,7 +72,7 @@ func WithUncertainty(v, u float64) string {
 		digit, decimals = digit*math.Pow10(-decimals), 0
 	}
 	if decimals > 5 {
-		return fmt.Sprintf("%s ± %.0e", Fixed(v, decimals), digit*math.Pow10(-decimals))
+		return fmt.Sprintf("%s ± %de-%d", Fixed(v, decimals), int(digit), decimals)
 	}
 	return fmt.Sprintf("%s ± %s", Fixed(v, decimals), Fixed(digit*math.Pow10(-decimals), decimals))
 }

@@ -1,0 +1,111 @@
+package main
+
+import (
+	"github.com/spf13/cobra"
+
+	"tannery/cmd/tannery/internal/report"
+	"tannery/de"
+	"tannery/de/channel"
+)
+
+// maxIterations is the largest number of iterations followed or allowed.
+const maxIterations = 1_000_000
+
+type traceOptions struct {
+	parameterOptions
+	profileOptions
+	methodOption
+	iterations integerOption
+	csv        bool
+}
+
+func newTrace() *cobra.Command {
+	o := &traceOptions{iterations: integerOption{low: 1, high: maxIterations, value: 1000}}
+	cmd := &cobra.Command{
+		Use:   "trace PROFILE",
+		Short: "the evolution of a profile at one channel parameter, iteration by iteration",
+		Example: `# how a profile decodes at σ = 0.94, and where its tunnel is narrowest
+tannery trace harbour.yaml --channel biawgn --parameter 0.94
+# the same at Eb/N0 in dB, every iteration as CSV
+tannery trace harbour.yaml --eb-n0 0.9 --csv
+# the (3,6) ensemble just below its threshold on the BEC
+tannery trace --lambda 3:1 --rho 6:1 --channel bec --parameter 0.4294`,
+		Long: `One row per iteration: error probability, entropy (bits) and Bhattacharyya
+parameter of the messages from variable nodes to check nodes, the entropy of the
+messages from check nodes, and the bit error probability of the decision. Row 0
+is the channel. Long traces are thinned in the table, never in CSV or JSON.
+
+The evolution ends when it is certain that errors vanish (converged), at a fixed
+point (stalled), or after --iterations (undecided).`,
+		Args:              atMost(1, "one profile"),
+		ValidArgsFunction: profileFiles,
+		RunE:              func(cmd *cobra.Command, args []string) error { return runTrace(cmd, args, o) },
+	}
+	o.addChannel(cmd, "the channel; by default the one that the profile's results name")
+	o.addParameter(cmd)
+	o.addMethod(cmd)
+	o.add(cmd)
+	cmd.Flags().Var(&o.iterations, "iterations", "most iterations to follow; 1000 if not given")
+	cmd.Flags().BoolVar(&o.csv, "csv", false, "answer with CSV, one line per iteration")
+	return cmd
+}
+
+func runTrace(cmd *cobra.Command, args []string, o *traceOptions) error {
+	if err := o.checkParameter(cmd); err != nil {
+		return err
+	}
+	if o.csv && asJSON(cmd) {
+		return usagef("--csv and --json: only one of the two")
+	}
+	if !o.given() {
+		return usagef("--parameter: missing; allowed: it, --eb-n0 or --es-n0")
+	}
+	p, warnings, err := o.read(cmd, args)
+	if err != nil {
+		return err
+	}
+	warn(cmd, warnings)
+	f, err := o.familyOf(p)
+	if err != nil {
+		return err
+	}
+	value, err := o.value(f, p.Ensemble.DesignRate())
+	if err != nil {
+		return err
+	}
+	engine, err := o.engine(f)
+	if err != nil {
+		return err
+	}
+	trace, err := engine.Trace(cmd.Context(), p.Ensemble, f, value, o.iterations.value)
+	if err != nil {
+		return methodError(err)
+	}
+	answer := traceAnswer(trace, f, p.Ensemble.DesignRate())
+	if o.csv {
+		return answer.WriteCSV(cmd.OutOrStdout())
+	}
+	return deliver(cmd, answer)
+}
+
+func traceAnswer(trace de.Trace, f channel.Family, rate float64) *report.Trace {
+	answer := &report.Trace{
+		Schema:    "tannery/trace/1",
+		Channel:   f.Name(),
+		Parameter: f.Parameter(),
+		Symbol:    f.Symbol(),
+		Value:     trace.Parameter,
+		Method:    string(trace.Method),
+		Outcome:   string(trace.Outcome),
+		Points:    make([]report.TracePoint, len(trace.Points)),
+		Warnings:  []string{},
+	}
+	answer.EbN0DB, answer.EsN0DB = ratios(f, trace.Parameter, rate)
+	for i, p := range trace.Points {
+		answer.Points[i] = report.TracePoint(p)
+	}
+	if trace.Narrowest >= 0 {
+		answer.Narrowest = new(trace.Narrowest)
+	}
+	return answer
+}
