@@ -63,10 +63,12 @@ func (GaussianEngine) Threshold(ctx context.Context, e ensembles.Ensemble, f cha
 		}
 	}
 	if t.best.s == 0 {
-		out.Warnings = append(out.Warnings, "the approximation converges on every channel, however bad: it does not hold for this ensemble")
+		out.Warnings = append(out.Warnings, alwaysWarning)
 	}
 	return enforceStability(out, e, f), nil
 }
+
+const alwaysWarning = "the approximation converges on every channel, however bad: it does not hold for this ensemble"
 
 // enforceStability lowers a threshold to the stability bound, and lists the
 // bound among the critical places if it is close.
@@ -196,8 +198,11 @@ func gaussianTrace(ctx context.Context, e ensembles.Ensemble, f channel.Family, 
 			return Trace{}, err
 		}
 		last := g.l
-		g.l = rule.variable(e.Lambda, g.s, before)
-		g.u = rule.check(e.Rho, g.l)
+		g.l, g.u = g.s, g.s
+		if !math.IsInf(g.s, 1) {
+			g.l = rule.variable(e.Lambda, g.s, before)
+			g.u = rule.check(e.Rho, g.l)
+		}
 		p := g.point(e, nodes, f, i, before)
 		trace.Points = append(trace.Points, p)
 		if math.IsInf(g.s, 1) || p.BitErrorProbability <= negligibleError &&

@@ -26,6 +26,9 @@ const (
 	// fitSigmaTolerance is the relative width at which the bisection of
 	// σ ends: three digits beyond those of the printed table.
 	fitSigmaTolerance = 1e-7
+	// fitLargestSigma is the σ up to which a threshold is looked for; the
+	// capacity there is 1e-8.
+	fitLargestSigma = 1e4
 	// fitIterations bounds one evolution: close to the threshold it takes
 	// about 10/√(relative distance) iterations to pass.
 	fitIterations = 200_000
@@ -74,11 +77,13 @@ func (GaussianFitEngine) Threshold(ctx context.Context, e ensembles.Ensemble, f 
 	low, high := 0.0, 1.0
 	for passes(high) {
 		low, high = high, 2*high
-		if high > 1e4 {
+		if high > fitLargestSigma {
+			low = math.Inf(1)
+			out.Warnings = append(out.Warnings, alwaysWarning)
 			break
 		}
 	}
-	for high-low > fitSigmaTolerance*high {
+	for high-low > fitSigmaTolerance*high { // not if low is +Inf
 		if err := ctx.Err(); err != nil {
 			return Threshold{}, err
 		}
@@ -89,7 +94,9 @@ func (GaussianFitEngine) Threshold(ctx context.Context, e ensembles.Ensemble, f 
 		}
 	}
 	out.Value = low
-	out.Uncertainty = high - low
+	if !math.IsInf(low, 1) {
+		out.Uncertainty = high - low
+	}
 	if slowest.l > 0 {
 		out.Critical = []Critical{{Entropy: slowest.entropy(e.Lambda, f)}}
 	}

@@ -29,7 +29,8 @@ const (
 // Limited returns the largest channel parameter at which the bit error
 // probability reaches the target in at most the given number of iterations,
 // as the length goes to infinity: the threshold of a decoder that stops there.
-// The target lies strictly between 0 and 1/2, and iterations is at least 1.
+// The target lies from 1e-30, where traces that converge end, to below 1/2, and
+// iterations is at least 1. It is ErrUnreachable if the best channel fails.
 //
 // It works for any engine, on the law that the bit error probability after a
 // number of iterations increases with the parameter (degradation; Richardson &
@@ -40,8 +41,8 @@ func Limited(ctx context.Context, engine Engine, e ensembles.Ensemble, f channel
 	if iterations < 1 {
 		return Threshold{}, fmt.Errorf("iterations %d: must be at least 1", iterations)
 	}
-	if !(target > 0 && target < 0.5) {
-		return Threshold{}, fmt.Errorf("target error %v: must lie strictly between 0 and 0.5", target)
+	if !(target >= negligibleError && target < 0.5) {
+		return Threshold{}, fmt.Errorf("target error %v: must be at least %g and below 0.5", target, negligibleError)
 	}
 	out := Threshold{Method: engine.Method()}
 	// excess is positive where the target is missed.

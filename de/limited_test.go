@@ -1,0 +1,114 @@
+package de
+
+import (
+	"context"
+	"errors"
+	"math"
+	"math/rand/v2"
+	"testing"
+
+	"tannery/de/channel"
+	"tannery/ensembles"
+)
+
+// With one iteration on the BEC the bit error probability is
+// ε·L(1-ρ(1-ε))/2 in closed form; for many iterations the threshold without a
+// limit is approached from below.
+func TestLimitedErasure(t *testing.T) {
+	ctx := context.Background()
+	e := ensembles.Regular(3, 6)
+	const target = 1e-6
+	got, err := Limited(ctx, ExactEngine{}, e, channel.BEC{}, 1, target)
+	if err != nil {
+		t.Fatal(err)
+	}
+	closed := func(epsilon float64) float64 { return epsilon * math.Pow(1-math.Pow(1-epsilon, 5), 3) / 2 }
+	if !(closed(got.Value) <= target*(1+1e-9) && closed(got.Value+got.Uncertainty) >= target*(1-1e-9)) {
+		t.Errorf("one iteration: ε = %.12g ± %.2g has error %g, want %g", got.Value, got.Uncertainty, closed(got.Value), target)
+	}
+	if got.Uncertainty > 1e-9*got.Value {
+		t.Errorf("one iteration: uncertainty %g", got.Uncertainty)
+	}
+	last := got.Value
+	for _, iterations := range []int{2, 5, 10, 50, 200, 2000, 100000} {
+		got, err := Limited(ctx, ExactEngine{}, e, channel.BEC{}, iterations, target)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if got.Value <= last {
+			t.Errorf("%d iterations: ε = %.12g, not above %.12g with fewer", iterations, got.Value, last)
+		}
+		last = got.Value
+	}
+	// (Iterations go as the inverse root of the distance.)
+	if threshold := erasureThreshold(t, e).Value; last > threshold || last < threshold-1e-6 {
+		t.Errorf("100000 iterations: ε = %.12g, threshold %.12g", last, threshold)
+	}
+}
+
+// The result reaches the target, and a little above it the target is missed,
+// whatever the ensemble, the engine and the limits.
+func TestLimitedProperty(t *testing.T) {
+	ctx := context.Background()
+	r := rand.New(rand.NewPCG(9, 10))
+	for range 40 {
+		e := randomEnsemble(r, 30, 15)
+		if e.DesignRate() < .05 {
+			continue
+		}
+		iterations := 1 + r.IntN(60)
+		target := math.Pow(10, -1-8*r.Float64())
+		for _, test := range []struct {
+			engine Engine
+			family channel.Family
+		}{{ExactEngine{}, channel.BEC{}}, {GaussianEngine{}, channel.BIAWGN{}}, {GaussianFitEngine{}, channel.BIAWGN{}}} {
+			got, err := Limited(ctx, test.engine, e, test.family, iterations, target)
+			if err != nil {
+				t.Fatalf("%v, %s: %v", e, test.engine.Method(), err)
+			}
+			for parameter, want := range map[float64]bool{got.Value: true, got.Value * (1 + 1e-8): false} {
+				trace, err := test.engine.Trace(ctx, e, test.family, parameter, iterations)
+				if err != nil {
+					t.Fatal(err)
+				}
+				final := trace.Points[len(trace.Points)-1].BitErrorProbability
+				if reached := final <= target; reached != want {
+					t.Errorf("%v, %s, %d iterations to %g: error %g at %.12g (threshold %.12g)",
+						e, test.engine.Method(), iterations, target, final, parameter, got.Value)
+				}
+			}
+		}
+	}
+}
+
+func TestLimitedErrors(t *testing.T) {
+	ctx := context.Background()
+	e := ensembles.Regular(3, 6)
+	for _, test := range []struct {
+		iterations int
+		target     float64
+	}{{0, .1}, {-3, .1}, {1, 0}, {1, .5}, {1, math.NaN()}, {1, -1}, {1, 1e-40}} {
+		if _, err := Limited(ctx, ExactEngine{}, e, channel.BEC{}, test.iterations, test.target); err == nil {
+			t.Errorf("%d iterations, target %v: no error", test.iterations, test.target)
+		}
+	}
+	var wrong *ErrChannel
+	if _, err := Limited(ctx, ExactEngine{}, e, channel.BIAWGN{}, 10, .1); !errors.As(err, &wrong) {
+		t.Errorf("exact on biawgn: %v, want ErrChannel", err)
+	}
+	if _, err := Limited(ctx, uncorrected{}, e, channel.BEC{}, 10, 1e-3); !errors.Is(err, ErrUnreachable) {
+		t.Errorf("error floor: %v, want ErrUnreachable", err)
+	}
+	cancelled, cancel := context.WithCancel(ctx)
+	cancel()
+	if _, err := Limited(cancelled, ExactEngine{}, e, channel.BEC{}, 10, .1); !errors.Is(err, context.Canceled) {
+		t.Errorf("cancelled: %v", err)
+	}
+}
+
+// uncorrected is an engine that never corrects all errors.
+type uncorrected struct{ ExactEngine }
+
+func (uncorrected) Trace(context.Context, ensembles.Ensemble, channel.Family, float64, int) (Trace, error) {
+	return Trace{Points: []Point{{}, {Iteration: 1, BitErrorProbability: .01}}}, nil
+}
