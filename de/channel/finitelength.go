@@ -86,7 +86,7 @@ func ParameterAtLength(f Dispersed, rate float64, n int, frameError float64) (fl
 		}
 	}
 	// The margin may be infinite at the ends; its arctangent is not.
-	return solve(low, high, func(parameter float64) float64 {
+	return solve(low, high, 0, func(parameter float64) float64 {
 		return math.Atan(marginInDeviations(f, parameter, rate, n)) - math.Atan(wanted)
 	}), nil
 }

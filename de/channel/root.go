@@ -3,13 +3,13 @@ package channel
 import "math"
 
 // solve returns the zero between low and high of a continuous function of
-// opposite signs there, to the last bits of x, by inverse quadratic
-// interpolation safeguarded by bisection (Chandrupatla, A new hybrid
+// opposite signs there, to the last bits of x or of the unit, whichever is
+// greater, by inverse quadratic interpolation safeguarded by bisection (Chandrupatla, A new hybrid
 // quadratic/bisection algorithm for finding the zero of a nonlinear function
 // without using derivatives, Advances in Engineering Software 28(3), 1997).
 // Where rounding has taken the change of sign away, the zero lies at an end,
 // and solve returns the end with the smaller value.
-func solve(low, high float64, f func(float64) float64) float64 {
+func solve(low, high, unit float64, f func(float64) float64) float64 {
 	a, b := high, low
 	fa, fb := f(a), f(b)
 	if fa == 0 || fb == 0 || (fa > 0) == (fb > 0) {
@@ -37,7 +37,7 @@ func solve(low, high float64, f func(float64) float64) float64 {
 		if math.Abs(fb) < math.Abs(fa) {
 			best, value = b, fb
 		}
-		tolerance := 2 * roundoff * math.Abs(best) / math.Abs(b-a)
+		tolerance := 2 * roundoff * math.Max(math.Abs(best), unit) / math.Abs(b-a)
 		if value == 0 || tolerance >= 0.5 {
 			return best
 		}
@@ -57,7 +57,7 @@ func solve(low, high float64, f func(float64) float64) float64 {
 // entropies are close to powers of their parameters, so that the logarithm of
 // one is nearly a straight line in the logarithm of the other.
 func solveLog(low, high float64, f func(float64) float64) float64 {
-	return math.Exp(solve(math.Log(low), math.Log(high), func(u float64) float64 { return f(math.Exp(u)) }))
+	return math.Exp(solve(math.Log(low), math.Log(high), 1, func(u float64) float64 { return f(math.Exp(u)) }))
 }
 
 // atRate returns the x between low and high, an increasing measure of the
