@@ -113,6 +113,9 @@ func (o *thresholdOptions) answer(ctx context.Context, engine de.Engine, p ensem
 		answer.Critical[i] = report.Critical(c)
 	}
 	answer.EbN0DB, answer.EsN0DB = ratios(f, threshold.Value, answer.DesignRate)
+	if f.Name() == (channel.BEC{}).Name() && answer.DesignRate > 0 {
+		answer.MAPBound = new(de.MAPUpperBound(e))
+	}
 	if o.iterations.given {
 		answer.Limited = &report.LimitedTarget{Iterations: o.iterations.value, TargetError: o.targetError.value}
 	}

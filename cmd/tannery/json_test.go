@@ -1,0 +1,105 @@
+package main
+
+import (
+	"encoding/json"
+	"slices"
+	"strings"
+	"testing"
+)
+
+// The keys of JSON answers are a contract with other programs: they may grow
+// but none may go.
+func TestJSONKeys(t *testing.T) {
+	const (
+		thresholdKeys = "schema channel parameter method threshold uncertainty design_rate limit gap eb_n0_db es_n0_db stability iterations warnings"
+		limitKeys     = "schema channel parameter value rate eb_n0_db es_n0_db"
+	)
+	for _, c := range []struct{ args, schema, keys string }{
+		{"threshold --lambda 3:1 --rho 6:1 --channel bec", "tannery/threshold/1", thresholdKeys + " gap.parameter gap.db gap.rate stability.bound stability.margin"},
+		{"threshold --lambda 3:1 --rho 6:1 --channel biawgn --method gaussian", "tannery/threshold/1", thresholdKeys},
+		{"threshold --lambda 1:0.5,3:0.5 --rho 6:1 --channel bec", "tannery/threshold/1", thresholdKeys},
+		{"threshold --lambda 3:1 --rho 3:1 --channel bec", "tannery/threshold/1", thresholdKeys},
+		{"limit --channel biawgn --rate 0.5", "tannery/limit/1", limitKeys},
+		{"limit --channel bsc --parameter 0.11", "tannery/limit/1", limitKeys},
+		{"limit --channel bsc --parameter 0.5", "tannery/limit/1", limitKeys},
+		{"limit --channel biawgn --parameter 1 --rate 0.7", "tannery/limit/1", limitKeys + " question.fits question.margin question.lowest_bit_error_rate"},
+		{"limit --channel biawgn --parameter 1 --source-rate 1 --symbol-rate 3", "tannery/limit/1", limitKeys + " link.fits link.largest_code_rate link.margin"},
+		{"limit --channel biawgn --rate 0.5 --length 1000 --frame-error 1e-3", "tannery/limit/1", limitKeys + " finite_length.value"},
+		{"limit --matrix ../../testdata/channels/buoy.csv", "tannery/limit/1", limitKeys + " capacity lower upper distribution"},
+		{"trace --lambda 3:1 --rho 6:1 --channel bec --parameter 0.3", "tannery/trace/1", "schema channel parameter value method outcome narrowest points warnings"},
+		{"export --lambda 3:1 --rho 6:1 --channel bec --length 100", "tannery/export/1", "schema profile profile.kind profile.realization profile.realization.variable_nodes warnings"},
+	} {
+		text := succeed(t, "", append(strings.Fields(c.args), "--json")...)
+		var object map[string]any
+		decoder := json.NewDecoder(strings.NewReader(text))
+		if err := decoder.Decode(&object); err != nil || decoder.More() {
+			t.Errorf("tannery %s: not one JSON object: %v\n%s", c.args, err, text)
+			continue
+		}
+		if object["schema"] != c.schema {
+			t.Errorf("tannery %s: schema %v, want %s", c.args, object["schema"], c.schema)
+		}
+		for _, key := range strings.Fields(c.keys) {
+			if !hasKey(object, key) {
+				t.Errorf("tannery %s: no key %s", c.args, key)
+			}
+		}
+	}
+}
+
+func hasKey(object map[string]any, path string) bool {
+	head, tail, nested := strings.Cut(path, ".")
+	value, ok := object[head]
+	if !nested {
+		return ok
+	}
+	inner, isObject := value.(map[string]any)
+	return isObject && hasKey(inner, tail)
+}
+
+// A profile goes through export, threshold and back without change.
+func TestProfilesPassFromCommandToCommand(t *testing.T) {
+	exported := succeed(t, "", "export", "--lambda", "2:0.3,3:0.7", "--rho", "6:1", "--channel", "bec", "--length", "1000")
+	again := succeed(t, exported, "export", "-", "--channel", "bec", "--length", "1000")
+	if exported != again {
+		t.Errorf("exported twice:\n%s\n%s", exported, again)
+	}
+	var a, b struct{ Threshold float64 }
+	if err := json.Unmarshal([]byte(succeed(t, exported, "threshold", "-", "--channel", "bec", "--json")), &a); err != nil {
+		t.Fatal(err)
+	}
+	if err := json.Unmarshal([]byte(succeed(t, "", "threshold", "--lambda", "2:0.3,3:0.7", "--rho", "6:1", "--channel", "bec", "--json")), &b); err != nil {
+		t.Fatal(err)
+	}
+	if a != b {
+		t.Errorf("threshold %v from the file, %v from the options", a, b)
+	}
+}
+
+// CSV, JSON and text of a trace show the same evolution, CSV and JSON whole.
+func TestTraceIsWholeInCSVAndJSON(t *testing.T) {
+	args := strings.Fields("trace --lambda 3:1 --rho 6:1 --channel bec --parameter 0.4294")
+	var answer struct{ Points []struct{ Iteration int } }
+	if err := json.Unmarshal([]byte(succeed(t, "", append(args, "--json")...)), &answer); err != nil {
+		t.Fatal(err)
+	}
+	lines := strings.Split(strings.TrimSpace(succeed(t, "", append(args, "--csv")...)), "\n")
+	if n := len(answer.Points); n < 400 || len(lines) != n+1 {
+		t.Errorf("%d points in JSON, %d lines of CSV", n, len(lines))
+	}
+}
+
+func TestCompletionKnowsNames(t *testing.T) {
+	for args, want := range map[string]string{
+		"__complete threshold --channel ": "biawgn",
+		"__complete threshold --method ":  "gaussian-fit",
+		"__complete tr":                   "trace",
+		"__complete schema ":              "brief",
+		"__complete limit --sym":          "--symbol-rate",
+	} {
+		words := strings.Split(args, " ")
+		if out := succeed(t, "", words...); !slices.ContainsFunc(strings.Split(out, "\n"), func(line string) bool { return strings.HasPrefix(line, want) }) {
+			t.Errorf("%s: %q lacks %s", args, out, want)
+		}
+	}
+}
