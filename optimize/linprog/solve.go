@@ -50,12 +50,17 @@ func (p *Program) Solve() (Solution, error) {
 
 // settle pivots until the dictionary is optimal, or shows that there is no
 // solution or no end. Where the dictionary is neither feasible nor dual
-// feasible, columns that price out are given an artificial negative cost for
+// feasible, it is made dual feasible by a bounding row if there is one.
+// Otherwise columns that price out are given an artificial negative cost for
 // the dual simplex, which then finds a feasible basis or proves that there is
 // none, for which the costs do not matter; the primal simplex goes on with the
 // true costs.
 func (w *dictionary) settle(limit int) (status Status, at int) {
-	if w.chooseLeaving(true) >= 0 {
+	feasible := w.chooseLeaving(true) < 0
+	if !feasible || w.pivots == 0 {
+		feasible = !w.bound() && feasible
+	}
+	if !feasible {
 		for q := range w.d {
 			if u := w.upper(w.nonbasic[q]); w.d[q] > 0 && u > 0 {
 				if !math.IsInf(u, 1) {
@@ -74,6 +79,58 @@ func (w *dictionary) settle(limit int) (status Status, at int) {
 		}
 	}
 	return w.primal(limit)
+}
+
+// bound makes the dictionary dual feasible by one pivot, and tells whether it
+// could. If a row has positive entries wherever the reduced cost is positive,
+// then the row bounds the objective, and the column with the largest ratio of
+// the two makes all reduced costs at most 0. In the design programme Σ λᵢ = 1
+// is such a row. The dual simplex then goes straight for the points where the
+// constraint is worst, where the primal would walk from point to neighbouring
+// point. Of several rows the one with the least bound is taken.
+func (w *dictionary) bound() bool {
+	row, column, least := -1, -1, math.Inf(1)
+	for r := range w.t {
+		q, ok := w.bounds(r)
+		if !ok {
+			continue
+		}
+		if v := w.beta[r] * w.d[q] / w.t[r][q]; v < least {
+			row, column, least = r, q, v
+		}
+	}
+	if row < 0 {
+		return false
+	}
+	w.pivot(row, column)
+	return true
+}
+
+// bounds returns the column on which to pivot if row r bounds the objective.
+func (w *dictionary) bounds(r int) (column int, ok bool) {
+	column = -1
+	for q, d := range w.d {
+		if d <= feasibility || w.upper(w.nonbasic[q]) == 0 {
+			continue
+		}
+		v := w.t[r][q]
+		if v <= smallPivot {
+			return -1, false
+		}
+		if column < 0 || d*w.t[r][column] > w.d[column]*v {
+			column = q
+		}
+	}
+	if column < 0 {
+		return -1, false
+	}
+	ratio := w.d[column] / w.t[r][column]
+	for q, d := range w.d {
+		if d-ratio*w.t[r][q] > feasibility && w.upper(w.nonbasic[q]) > 0 {
+			return -1, false
+		}
+	}
+	return column, true
 }
 
 // follow takes in the columns and rows added since the last Solve, keeping
