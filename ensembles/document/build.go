@@ -92,12 +92,17 @@ func ListNode(items ...*yaml.Node) *yaml.Node {
 // Node returns the value to be written, nil for the zero Tree.
 func (t Tree) Node() *yaml.Node { return t.node }
 
-// textNode quotes what the YAML library would write in a form that it does
-// not always read back: text of several lines, or with blanks at an end.
 func textNode(text string) *yaml.Node {
 	n := &yaml.Node{Kind: yaml.ScalarNode, Tag: "!!str", Value: text}
-	if strings.TrimSpace(text) != text || strings.ContainsFunc(text, func(r rune) bool { return !unicode.IsPrint(r) }) {
+	if delicate(text) {
 		n.Style = yaml.DoubleQuotedStyle
 	}
 	return n
+}
+
+// delicate tells whether the YAML library might write a text, if left to
+// itself, in a form that it does not read back: text of several lines, with
+// blanks at an end, or with characters that do not print.
+func delicate(text string) bool {
+	return strings.TrimSpace(text) != text || strings.ContainsFunc(text, func(r rune) bool { return !unicode.IsPrint(r) })
 }

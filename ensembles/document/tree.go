@@ -77,10 +77,13 @@ func clean(n *yaml.Node) *yaml.Node {
 	c := &yaml.Node{Kind: n.Kind, Style: n.Style &^ yaml.TaggedStyle, Tag: n.Tag, Value: n.Value}
 	switch {
 	case n.Kind != yaml.ScalarNode:
+	case delicate(n.Value) || n.Style&(yaml.LiteralStyle|yaml.FoldedStyle) != 0:
+		c.Style, c.Tag = yaml.DoubleQuotedStyle, "!!str"
 	case n.Style&quotedStyles == 0:
 		c.Tag = "" // follows from the text
-	case n.Style&(yaml.LiteralStyle|yaml.FoldedStyle) != 0:
-		c.Style = yaml.DoubleQuotedStyle
+		if c.Value == "" {
+			c.Value = "null" // so that there is something where it stands alone
+		}
 	}
 	for _, child := range n.Content {
 		c.Content = append(c.Content, clean(child))

@@ -60,7 +60,7 @@ func (v Value) Warn(text string) {
 
 func (v Value) position() (line, column int) {
 	switch {
-	case v.node != nil && v.node.Kind == yaml.ScalarNode && v.node.Value == "" && v.key != nil:
+	case v.node != nil && v.node.Kind == yaml.ScalarNode && v.node.Value == "" && v.node.Style&quotedStyles == 0 && v.key != nil:
 		return v.key.Line, v.key.Column // an empty value has no place of its own
 	case v.node != nil:
 		return v.node.Line, v.node.Column
