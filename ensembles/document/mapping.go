@@ -66,7 +66,9 @@ type Entry struct {
 // ByDegree returns the entries of a mapping whose keys are whole numbers
 // from low to high, such as degrees, in the order of the file; at least one
 // must be there. Keys within double quotes are allowed too, because JSON
-// knows no others. what describes the mapping in messages.
+// knows no others. If a key is refused the whole is Faulty, and the other
+// entries are returned for their own problems to be found. what describes
+// the mapping in messages.
 func (v Value) ByDegree(low, high int, what string) []Entry {
 	if !v.expect(yaml.MappingNode, what) {
 		return nil
@@ -78,6 +80,7 @@ func (v Value) ByDegree(low, high int, what string) []Entry {
 	for i := 0; i < len(v.node.Content); i += 2 {
 		key, value := v.node.Content[i], v.node.Content[i+1]
 		if key.Kind != yaml.ScalarNode || v.doc.refused[key] {
+			v.doc.refused[v.node] = true // what is left says nothing of the whole
 			continue
 		}
 		at := Value{doc: v.doc, node: value, key: key, parent: v.node, path: join(v.path, key.Value), required: true}
@@ -85,6 +88,7 @@ func (v Value) ByDegree(low, high int, what string) []Entry {
 		if err != nil || strconv.Itoa(n) != key.Value || n < low || n > high || key.Style&^(yaml.DoubleQuotedStyle|yaml.FlowStyle) != 0 {
 			v.doc.report(Problem{Line: key.Line, Column: key.Column, Key: v.path,
 				Found: "the key " + describe(key), Allowed: wholeNumber(low, high)})
+			v.doc.refused[v.node] = true
 			continue
 		}
 		entries = append(entries, Entry{n, at})
