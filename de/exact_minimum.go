@@ -13,7 +13,7 @@ import (
 //   - A and the second moment of i-1 increase with y (they are means of
 //     increasing functions under weights with increasing likelihood ratio), and
 //     y increases with x;
-//   - y', ρ''(1-x) and y/x decrease with x, since y is concave and y(0) = 0.
+//   - y', ρ″(1-x) and y/x decrease with x, since y is concave and y(0) = 0.
 //
 // Hence B lies between (a/y_a)·y'_b and (b/y_b)·y'_a, the curvature of g is
 // bounded below (curvatureBound), and
@@ -67,10 +67,10 @@ type erasureSearch struct {
 	found  int
 }
 
-// point evaluates f at x and notes it if it is the least so far.
-func (s *erasureSearch) point(x float64) erasurePoint {
+// point evaluates f at x = e^t and notes it if it is the least so far.
+func (s *erasureSearch) point(t float64) erasurePoint {
 	s.points++
-	p := erasureAt(s.e, x)
+	p := erasureAtLog(s.e, t)
 	s.best = math.Min(s.best, p.f)
 	return p
 }
@@ -106,7 +106,7 @@ func (s *erasureSearch) branch(slope0, stability float64, limit int) bool {
 	n := 0
 	step := math.Log(0.02/slope0) / coarseIntervals
 	for i := 0; i <= coarseIntervals; i++ {
-		p := s.point(math.Exp(float64(i) * step))
+		p := s.point(float64(i) * step)
 		if n > 0 && p.slope < 0 && pending[n-1].slope > 0 && !s.known(p.x, pending[n-1].x) {
 			s.polish(&p, &pending[n-1])
 		}
@@ -117,7 +117,7 @@ func (s *erasureSearch) branch(slope0, stability float64, limit int) bool {
 	// The interval from 0: it is split off at ever smaller x until one of the
 	// bounds at 0 decides.
 	for n < maxPending-1 && !s.decidedAtZero(&pending[n-1], slope0, stability) {
-		pending[n] = s.point(pending[n-1].x / 4)
+		pending[n] = s.point(pending[n-1].t - 2*math.Ln2)
 		n++
 	}
 
@@ -130,8 +130,8 @@ func (s *erasureSearch) branch(slope0, stability float64, limit int) bool {
 			if s.points >= limit {
 				return false
 			}
-			middle := math.Exp(0.5 * (a.t + b.t))
-			if n < maxPending && a.x < middle && middle < b.x {
+			middle := 0.5 * (a.t + b.t)
+			if n < maxPending && a.t < middle && middle < b.t {
 				pending[n] = s.point(middle)
 				n++
 				continue
@@ -150,7 +150,7 @@ func (s *erasureSearch) branch(slope0, stability float64, limit int) bool {
 //	d ln f/dx = S'(1-x)/S(1-x) - y'·W'(y)/W(y),  S = y/x, W = λ(y)/y.
 //
 // S(z) and W(y) have non-negative coefficients, so they and their derivatives
-// increase, and ρ”(z)/2 ≤ S'(z) ≤ ρ”(1)/2.
+// increase, and ρ″(z)/2 ≤ S'(z) ≤ ρ″(1)/2.
 func (s *erasureSearch) decidedAtZero(b *erasurePoint, slope0, stability float64) bool {
 	overY := b.f / b.x * b.y // y/λ(y) = 1/W
 	if overY/slope0 >= s.best*(1-s.tolerance) {
@@ -171,7 +171,7 @@ func (s *erasureSearch) decidedAtZero(b *erasurePoint, slope0, stability float64
 		}
 		return true
 	}
-	var curvature0 float64 // ρ''(1)
+	var curvature0 float64 // ρ″(1)
 	for _, t := range s.e.Rho {
 		curvature0 += t.Fraction * float64(t.Degree-1) * float64(t.Degree-2)
 	}
@@ -209,7 +209,7 @@ func (s *erasureSearch) bound(a, b *erasurePoint) (bound float64, done bool) {
 	return bound, bound >= enough
 }
 
-// curvatureBound returns a lower bound of g” on [a,b].
+// curvatureBound returns a lower bound of g″ on [a,b].
 func curvatureBound(a, b *erasurePoint) float64 {
 	low := a.x / a.y * b.dy
 	high := math.Min(1, b.x/b.y*a.dy)
@@ -246,7 +246,7 @@ func (s *erasureSearch) polish(a, b *erasurePoint) {
 	low, high := a.t, b.t
 	t := (a.t*b.slope - b.t*a.slope) / (b.slope - a.slope)
 	for {
-		p := s.point(math.Exp(t))
+		p := s.point(t)
 		if p.slope < 0 {
 			low = t
 		} else {

@@ -19,7 +19,7 @@ import (
 //
 // the function g = ln f has slope 1-A·B and curvature
 //
-//	g'' = A·x²ρ''(1-x)/y - A·B(1-B) - V·B²,
+//	g″ = A·x²ρ″(1-x)/y - A·B(1-B) - V·B²,
 //
 // where V is the variance of the degree i-1 under the weights λᵢy^(i-1), whose
 // mean is A.
@@ -33,7 +33,7 @@ type erasurePoint struct {
 	mean float64 // A
 	sq   float64 // second moment of i-1, so that V = sq - A²
 	dy   float64 // ρ'(1-x)
-	d2y  float64 // ρ''(1-x)
+	d2y  float64 // ρ″(1-x)
 	b    float64 // B
 
 	slope, curvature float64 // of g in t
@@ -47,7 +47,7 @@ const resync = 32
 // advanced by multiplication; beyond it e^(n·ln y) is faster and more exact.
 const largestFactor = 8
 
-// check returns y = 1-ρ(z), ρ(z), ρ'(z) and ρ”(z) for z = 1-x, with y to full
+// check returns y = 1-ρ(z), ρ(z), ρ'(z) and ρ″(z) for z = 1-x, with y to full
 // relative precision however small x is.
 func check(rho ensembles.Distribution, x float64) (y, r, dr, d2r float64) {
 	if x >= 1 {
@@ -55,7 +55,7 @@ func check(rho ensembles.Distribution, x float64) (y, r, dr, d2r float64) {
 		return 1 - r, r, rho.Fraction(2), 2 * rho.Fraction(3)
 	}
 	z := 1 - x
-	l := math.Log1p(-x)
+	l := logarithm(z, x)
 	for _, t := range rho {
 		n := float64(t.Degree - 1)
 		var power, rest float64 // zⁿ and 1-zⁿ
@@ -113,9 +113,23 @@ func logarithm(y, r float64) float64 {
 	return math.Log(y)
 }
 
-// at evaluates f at x in (0,1].
+// erasureAt evaluates f at x in (0,1].
 func erasureAt(e *ensembles.Ensemble, x float64) erasurePoint {
 	p := erasurePoint{x: x, t: math.Log(x)}
+	p.evaluate(e)
+	return p
+}
+
+// erasureAtLog evaluates f at x = e^t, t ≤ 0.
+func erasureAtLog(e *ensembles.Ensemble, t float64) erasurePoint {
+	p := erasurePoint{x: math.Exp(t), t: t}
+	p.evaluate(e)
+	return p
+}
+
+// evaluate fills in what follows from x.
+func (p *erasurePoint) evaluate(e *ensembles.Ensemble) {
+	x := p.x
 	var r float64
 	p.y, r, p.dy, p.d2y = check(e.Rho, x)
 	sum, first, second, logY := variable(e.Lambda, p.y, r)
@@ -135,5 +149,4 @@ func erasureAt(e *ensembles.Ensemble, x float64) erasurePoint {
 	p.b = x * p.dy / p.y
 	p.slope = 1 - p.mean*p.b
 	p.curvature = p.mean*x*x*p.d2y/p.y - p.mean*p.b*(1-p.b) - (p.sq-p.mean*p.mean)*p.b*p.b
-	return p
 }

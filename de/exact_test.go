@@ -254,33 +254,46 @@ func TestExactErrors(t *testing.T) {
 	}
 }
 
+// benchmarked holds ensembles of three to six degrees, of one largest degree
+// after another with the same number of terms.
+var benchmarked = []struct{ name, lambda, rho string }{
+	{"regular", "3:1", "6:1"},
+	{"terms=3", "2:0.3,3:0.3,10:0.4", "6:1"},
+	{"terms=4", "2:0.25105,3:0.30938,4:0.00104,10:0.43853", "7:0.63676,8:0.36324"},
+	{"terms=5", "2:0.2,3:0.2,5:0.1,8:0.15,20:0.35", "8:1"},
+	// Nearly flat: the outcome of a design for ε = 0.45.
+	{"terms=5,flat", "2:0.31746031746031744,3:0.12075804290167375,4:0.15131030086443908,8:0.21382666578490211,20:0.1966446729886676", "8:1"},
+	{"terms=6", "2:0.2,3:0.2,5:0.1,8:0.1,20:0.25,50:0.15", "9:1"},
+	{"largest=10", "2:0.25,3:0.2,5:0.15,10:0.4", "7:1"},
+	{"largest=100", "2:0.25,3:0.2,5:0.15,100:0.4", "7:1"},
+	{"largest=1000", "2:0.25,3:0.2,5:0.15,1000:0.4", "7:1"},
+	{"largest=10000", "2:0.25,3:0.2,5:0.15,10000:0.4", "7:1"},
+}
+
 func BenchmarkExact(b *testing.B) {
-	for _, test := range []struct{ name, lambda, rho string }{
-		{"regular36", "3:1", "6:1"},
-		{"terms3", "2:0.3,3:0.3,10:0.4", "6:1"},
-		{"terms4", "2:0.25105,3:0.30938,4:0.00104,10:0.43853", "7:0.63676,8:0.36324"},
-		{"terms6", "2:0.2,3:0.2,5:0.1,8:0.15,20:0.35", "8:1"},
-		{"degree10", "2:0.25,3:0.2,5:0.15,10:0.4", "7:1"},
-		{"degree100", "2:0.25,3:0.2,5:0.15,100:0.4", "7:1"},
-		{"degree1000", "2:0.25,3:0.2,5:0.15,1000:0.4", "7:1"},
-		{"degree10000", "2:0.25,3:0.2,5:0.15,10000:0.4", "7:1"},
-	} {
+	for _, test := range benchmarked {
 		b.Run(test.name, func(b *testing.B) {
-			e := ensembles.Ensemble{Lambda: distribution(b, test.lambda), Rho: distribution(b, test.rho)}
-			b.ReportAllocs()
-			var got Threshold
-			for b.Loop() {
-				got = erasureThreshold(b, e)
-			}
-			b.ReportMetric(float64(got.Iterations), "points")
+			benchmarkThreshold(b, ExactEngine{}, ensembles.Ensemble{
+				Lambda: distribution(b, test.lambda), Rho: distribution(b, test.rho)}, channel.BEC{})
 		})
 	}
+	// The flattest there are, whose certificate needs many points.
 	for _, n := range []int{8, 50} {
-		b.Run(fmt.Sprintf("rightregular%d", n), func(b *testing.B) {
+		b.Run(fmt.Sprintf("rightregular/terms=%d", n-1), func(b *testing.B) {
 			e, _ := rightRegular(8, n)
-			for b.Loop() {
-				erasureThreshold(b, e)
-			}
+			benchmarkThreshold(b, ExactEngine{}, e, channel.BEC{})
 		})
 	}
+}
+
+func benchmarkThreshold(b *testing.B, engine Engine, e ensembles.Ensemble, f channel.Family) {
+	b.ReportAllocs()
+	var got Threshold
+	for b.Loop() {
+		var err error
+		if got, err = engine.Threshold(context.Background(), e, f); err != nil {
+			b.Fatal(err)
+		}
+	}
+	b.ReportMetric(float64(got.Iterations), "points")
 }

@@ -122,27 +122,14 @@ func TestGaussianSharp(t *testing.T) {
 }
 
 func BenchmarkGaussian(b *testing.B) {
-	for _, test := range []struct{ name, lambda, rho string }{
-		{"regular36", "3:1", "6:1"},
-		{"terms3", "2:0.3,3:0.3,10:0.4", "6:1"},
-		{"terms4", "2:0.25105,3:0.30938,4:0.00104,10:0.43853", "7:0.63676,8:0.36324"},
-		{"terms6", "2:0.2,3:0.2,5:0.1,8:0.15,20:0.35", "8:1"},
-		{"degree10", "2:0.25,3:0.2,5:0.15,10:0.4", "7:1"},
-		{"degree100", "2:0.25,3:0.2,5:0.15,100:0.4", "7:1"},
-		{"degree1000", "2:0.25,3:0.2,5:0.15,1000:0.4", "7:1"},
-		{"degree10000", "2:0.25,3:0.2,5:0.15,10000:0.4", "7:1"},
-	} {
+	for _, test := range benchmarked {
 		b.Run(test.name, func(b *testing.B) {
-			e := ensembles.Ensemble{Lambda: distribution(b, test.lambda), Rho: distribution(b, test.rho)}
-			b.ReportAllocs()
-			var got Threshold
-			for b.Loop() {
-				var err error
-				if got, err = (GaussianEngine{}).Threshold(context.Background(), e, channel.BIAWGN{}); err != nil {
-					b.Fatal(err)
-				}
-			}
-			b.ReportMetric(float64(got.Iterations), "points")
+			benchmarkThreshold(b, GaussianEngine{}, ensembles.Ensemble{
+				Lambda: distribution(b, test.lambda), Rho: distribution(b, test.rho)}, channel.BIAWGN{})
 		})
 	}
+}
+
+func BenchmarkGaussianFit(b *testing.B) {
+	benchmarkThreshold(b, GaussianFitEngine{}, ensembles.Regular(3, 6), channel.BIAWGN{})
 }

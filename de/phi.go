@@ -73,8 +73,7 @@ func phiExponent(x float64) float64 {
 	if x >= asymptoticFrom {
 		return asymptoticExponent(x)
 	}
-	p, _ := evaluate(phiTable[:], x, phiFirst)
-	return x * p
+	return x * value(phiTable[:], x, phiFirst)
 }
 
 // phiExponentSlope returns -ln φ(x) and its derivative, which falls from 1/2
@@ -84,7 +83,7 @@ func phiExponentSlope(x float64) (l, slope float64) {
 		const a = math.Pi * math.Pi / 4 // -ln(1-a/x+5a²/(2x²)) = a/x-2a²/x²+…
 		return asymptoticExponent(x), 0.25 + (0.5-(a-4*a*a/x)/x)/x
 	}
-	p, dp := evaluate(phiTable[:], x, phiFirst)
+	p, dp := valueSlope(phiTable[:], x, phiFirst)
 	return x * p, p + x*dp
 }
 
@@ -103,8 +102,7 @@ func asymptoticExponent(x float64) float64 {
 // phiExponentInverse returns x at which -ln φ(x) = l, for l ≥ 0.
 func phiExponentInverse(l float64) float64 {
 	if l < math.Ldexp(1, inverseLast+1) {
-		p, _ := evaluate(inverseTable[:], l, inverseFirst)
-		return l * p
+		return l * value(inverseTable[:], l, inverseFirst)
 	}
 	if math.IsInf(l, 1) {
 		return l
@@ -119,23 +117,35 @@ func phiExponentInverse(l float64) float64 {
 	return x
 }
 
-// evaluate returns the value at x of the polynomial for the interval from 2^k
-// to 2^(k+1) that holds x, and its derivative; rows start at k = first, the
-// first row from 0.
-func evaluate(rows [][phiTerms]float64, x float64, first int) (p, slope float64) {
-	k := int(math.Float64bits(x)>>52&0x7ff) - 1023 // x = 1.… · 2^k
-	var t, scale float64
-	if k <= first {
-		k = first
-		scale = math.Float64frombits(uint64(1023-k) << 52)
-		t = x*scale - 1
-	} else {
-		scale = math.Float64frombits(uint64(1023-k) << 52)
-		scale *= 2
-		t = x*scale - 3
+// row finds the polynomial for the interval from 2^k to 2^(k+1) that holds x,
+// and the place t of x in it, from -1 to 1, with dt/dx; the first row stands
+// for k = first and reaches down to 0.
+func row(rows [][phiTerms]float64, x float64, first int) (c *[phiTerms]float64, t, scale float64) {
+	scale = math.Float64frombits(uint64(1023-first) << 52) // 2^-first
+	if !(x*scale >= 2) {                                   // also where x is not positive
+		return &rows[0], x*scale - 1, scale
 	}
-	c := &rows[k-first]
-	// Even and odd terms apart: two chains that run side by side.
+	k := int(math.Float64bits(x)>>52) - 1023 // x = 1.… · 2^k
+	scale = math.Float64frombits(uint64(1024-k) << 52)
+	return &rows[k-first], x*scale - 3, scale
+}
+
+// value returns the value at x of the polynomial that row finds. Even and odd
+// terms are apart, as two chains that run side by side.
+func value(rows [][phiTerms]float64, x float64, first int) float64 {
+	c, t, _ := row(rows, x, first)
+	w := t * t
+	var even, odd float64
+	for i := phiTerms - 2; i >= 0; i -= 2 {
+		even = even*w + c[i]
+		odd = odd*w + c[i+1]
+	}
+	return even + t*odd
+}
+
+// valueSlope returns the value and the derivative.
+func valueSlope(rows [][phiTerms]float64, x float64, first int) (p, slope float64) {
+	c, t, scale := row(rows, x, first)
 	w := t * t
 	var even, odd, dEven, dOdd float64
 	for i := phiTerms - 2; i >= 0; i -= 2 {
