@@ -212,29 +212,39 @@ func (d Distribution) Min() int { return d[0].Degree }
 // Max returns the largest degree; d must not be empty.
 func (d Distribution) Max() int { return d[len(d)-1].Degree }
 
-// Nodes converts from edge to node perspective: Lᵢ = (λᵢ/i) / Σ λⱼ/j. The
-// quotients are evaluated exactly and rounded once.
+// Nodes converts from edge to node perspective: Lᵢ = (λᵢ/i) / Σ λⱼ/j, each
+// fraction rounded once.
 func (d Distribution) Nodes() Distribution {
-	return d.reweigh(func(degree int64) *big.Rat { return big.NewRat(1, degree) })
+	return d.reweigh((*big.Float).Quo)
 }
 
-// Edges converts from node to edge perspective: λᵢ = i·Lᵢ / Σ j·Lⱼ. The
-// quotients are evaluated exactly and rounded once.
+// Edges converts from node to edge perspective: λᵢ = i·Lᵢ / Σ j·Lⱼ, each
+// fraction rounded once.
 func (d Distribution) Edges() Distribution {
-	return d.reweigh(func(degree int64) *big.Rat { return big.NewRat(degree, 1) })
+	return d.reweigh((*big.Float).Mul)
 }
 
-func (d Distribution) reweigh(weight func(degree int64) *big.Rat) Distribution {
-	exact := make([]*big.Rat, len(d))
-	sum := new(big.Rat)
+// reweighPrecision is the precision, in bits, of the quotients and of their
+// sum before they are rounded to 53. The result is the double nearest to the
+// exact value, or a neighbour only if that lies within 2⁻²⁰⁰ of the middle
+// between two. Rational numbers would not err even there, but their
+// denominators grow with the number of degrees: seconds for some thousands.
+const reweighPrecision = 256
+
+// reweigh applies the operation to every fraction and its degree, and
+// normalises.
+func (d Distribution) reweigh(operation func(z, fraction, degree *big.Float) *big.Float) Distribution {
+	number := func(x float64) *big.Float { return new(big.Float).SetPrec(reweighPrecision).SetFloat64(x) }
+	weight := make([]*big.Float, len(d))
+	sum := number(0)
 	for i, t := range d {
-		exact[i] = new(big.Rat).SetFloat64(t.Fraction)
-		exact[i].Mul(exact[i], weight(int64(t.Degree)))
-		sum.Add(sum, exact[i])
+		weight[i] = number(t.Fraction)
+		operation(weight[i], weight[i], number(float64(t.Degree)))
+		sum.Add(sum, weight[i])
 	}
 	out := slices.Clone(d)
 	for i := range out {
-		out[i].Fraction, _ = exact[i].Quo(exact[i], sum).Float64()
+		out[i].Fraction, _ = weight[i].Quo(weight[i], sum).Float64()
 	}
 	return out
 }

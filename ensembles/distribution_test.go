@@ -91,6 +91,27 @@ func TestPerspectiveRoundTrip(t *testing.T) {
 	}
 }
 
+// Both perspectives are rational functions: exact arithmetic, rounded once,
+// gives the same bits.
+func TestPerspectiveIsExact(t *testing.T) {
+	r := seeded(6)
+	for range 200 {
+		d := randomDistribution(r, 12, 1, 1000)
+		weights := make([]*big.Rat, len(d))
+		sum := new(big.Rat)
+		for i, term := range d {
+			weights[i] = new(big.Rat).SetFloat64(term.Fraction)
+			weights[i].Quo(weights[i], big.NewRat(int64(term.Degree), 1))
+			sum.Add(sum, weights[i])
+		}
+		for i, n := range d.Nodes() {
+			if want, _ := weights[i].Quo(weights[i], sum).Float64(); n.Fraction != want {
+				t.Fatalf("%v: %v of the nodes have degree %d, exactly %v", d, n.Fraction, n.Degree, want)
+			}
+		}
+	}
+}
+
 // Whole numbers of nodes give exact fractions: those of the rate-1/2 code of
 // ETSI EN 302 307, Annex B (recalled): 12960 nodes of degree 8, 19440 of
 // degree 3, 32399 of degree 2 and one of degree 1.
