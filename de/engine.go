@@ -50,17 +50,7 @@ var engines = map[Method]Engine{
 	Exact:       ExactEngine{},
 	Gaussian:    GaussianEngine{},
 	GaussianFit: GaussianFitEngine{},
-}
-
-// defaults lists the methods in the order of preference with the channels on
-// which each is the most exact one: the first that fits is the default. An
-// empty list stands for every channel.
-var defaults = []struct {
-	method   Method
-	channels []string
-}{
-	{Exact, []string{bec}},
-	{Gaussian, []string{biawgn}},
+	Quantized:   QuantizedEngine{},
 }
 
 // Methods returns the methods that EngineFor knows, in alphabetical order.
@@ -80,13 +70,10 @@ func EngineFor(method Method) (Engine, error) {
 	return nil, fmt.Errorf("method %q: must be one of %s", method, strings.Join(known, ", "))
 }
 
-// DefaultMethod returns the most exact method that covers the family, "" if
-// none does.
+// DefaultMethod returns the most exact method that covers the family.
 func DefaultMethod(f channel.Family) Method {
-	for _, d := range defaults {
-		if len(d.channels) == 0 || slices.Contains(d.channels, f.Name()) {
-			return d.method
-		}
+	if f.Name() == bec {
+		return Exact
 	}
-	return ""
+	return Quantized
 }

@@ -1,0 +1,237 @@
+package de
+
+import (
+	"context"
+	"fmt"
+	"math"
+	"slices"
+
+	"tannery/de/channel"
+	"tannery/de/density"
+	"tannery/ensembles"
+)
+
+// approach finds the threshold on one grid by runs that come ever closer to
+// it from below.
+type approach struct {
+	e     ensembles.Ensemble
+	f     channel.Family
+	grid  *density.Grid
+	low   float64 // certain to succeed, or has succeeded
+	high  float64 // cannot be exceeded, or has failed
+	bound float64 // of the stability condition
+
+	runs       []course // that succeeded, in order of parameter
+	iterations int
+	estimate   float64
+	error      float64   // of the estimate: extrapolation and stopping rule
+	critical   []closing // places where the tunnel closes, the first one first
+}
+
+const (
+	// iterationCap ends a run. One that needs more is so close to the
+	// threshold that its outcome may be taken for a failure.
+	iterationCap = 200_000
+	// remaining is the fraction of the predicted distance to the threshold
+	// that is left after each run.
+	remaining = 0.15
+	// extrapolationGain is by how much an estimate is at least better than
+	// the one before. The error of extrapolating a parabola goes with the
+	// product of the distances of its three runs, each of which is left at
+	// 0.15 of itself, so that it gains a factor of 300 in the end.
+	extrapolationGain = 8
+	// leastStart is the least distance of the first run from the guess,
+	// relative to it.
+	leastStart = 0.02
+	// fairEstimate is how far an estimate may be off, in tolerances, for
+	// transfer to build on it, and transferGain by how much the difference
+	// of two grids in it is smaller than itself.
+	fairEstimate = 32
+	transferGain = 64
+	// runCap ends an approach that does not settle.
+	runCap = 60
+)
+
+// bracket sets low, where success is certain, high, which cannot be reached,
+// and the stability bound.
+func (a *approach) bracket(ctx context.Context) error {
+	best, worst := a.f.Range()
+	a.bound = StabilityOf(a.e, a.f, best).Bound
+	a.low, a.high = best, min(a.bound, worst)
+	if rate := a.e.DesignRate(); rate > 0 && rate < 1 {
+		limit, err := a.f.Inverse(rate)
+		if err != nil {
+			a.high = best // the whole family has less capacity
+			return nil
+		}
+		a.high = min(a.high, limit)
+	}
+	if math.IsInf(a.high, 1) {
+		return fmt.Errorf("the threshold has no upper bound: the design rate is %g and there are no variable nodes of degree 2", a.e.DesignRate())
+	}
+	// On the BEC the Bhattacharyya parameter is the erasure probability, and
+	// no channel of the same parameter is worse: below is certain success.
+	onBEC, err := ExactEngine{}.Threshold(ctx, a.e, channel.BEC{})
+	if err != nil {
+		return err
+	}
+	a.low = min(channel.ParameterAtBhattacharyya(a.f, onBEC.Value), a.high)
+	// Thresholds on different channels are at nearly the same capacity.
+	a.estimate = a.low + (a.high-a.low)/2
+	if onBEC.Value < 1 {
+		if guess, err := a.f.Inverse(1 - onBEC.Value); err == nil {
+			a.estimate = min(guess, a.high)
+		}
+	}
+	return nil
+}
+
+// start returns how far below the guess to begin.
+func (a *approach) start() float64 {
+	return max((a.estimate-a.low)/4, leastStart*a.estimate)
+}
+
+// transfer finds the threshold on a finer grid from what was learned on a
+// coarser one. Three runs that gave a fair estimate there are repeated; what
+// was later found to be missing from that estimate is added, since the two
+// grids differ little. It reports false if the finer grid differs so much that
+// one of the runs fails.
+func (a *approach) transfer(ctx context.Context, coarse *approach, tolerance float64) (bool, error) {
+	a.runs, a.iterations = nil, 0
+	fair := *coarse
+	for n := 3; ; n++ {
+		fair.runs = coarse.runs[:n]
+		fair.predict()
+		if n == len(coarse.runs) || math.Abs(fair.estimate-coarse.estimate) <= fairEstimate*tolerance {
+			break
+		}
+	}
+	for _, c := range fair.runs[len(fair.runs)-3:] {
+		if ok, err := a.run(ctx, c.parameter); !ok {
+			return false, err
+		}
+	}
+	a.predict()
+	missing := coarse.estimate - fair.estimate
+	a.estimate = min(a.estimate+missing, a.bound)
+	a.error = coarse.error + math.Abs(missing)/transferGain
+	return true, nil
+}
+
+// run evolves at one parameter and files the outcome.
+func (a *approach) run(ctx context.Context, parameter float64) (bool, error) {
+	c, err := evolve(ctx, a.e, a.grid, a.f, parameter, iterationCap)
+	a.iterations += len(c.rate)
+	if err != nil {
+		return false, err
+	}
+	if c.outcome != Converged {
+		a.high = min(a.high, parameter)
+		return false, nil
+	}
+	at := len(a.runs)
+	for at > 0 && a.runs[at-1].parameter > parameter {
+		at--
+	}
+	a.runs = slices.Insert(a.runs, at, c)
+	a.low = max(a.low, parameter)
+	return true, nil
+}
+
+// find approaches the threshold until successive predictions agree within
+// tolerance (of the parameter), beginning at the given distance below guess.
+func (a *approach) find(ctx context.Context, guess, distance, tolerance float64) error {
+	a.runs, a.iterations, a.critical = nil, 0, nil
+	a.estimate, a.error = math.NaN(), math.Inf(1)
+	next := guess - distance
+	for range runCap {
+		if a.high-a.low <= tolerance {
+			a.estimate, a.error = a.low+(a.high-a.low)/2, (a.high-a.low)/2
+			return nil
+		}
+		ok, err := a.run(ctx, next)
+		if err != nil {
+			return err
+		}
+		n := len(a.runs)
+		switch {
+		case n == 0:
+			distance *= 2
+			next = max(next-distance, next/2)
+			continue
+		case n == 1 && ok:
+			next = a.below(next + distance*0.6)
+			continue
+		case n == 1:
+			next = a.runs[0].parameter + (next-a.runs[0].parameter)/2
+			continue
+		}
+		previous := a.estimate
+		a.predict()
+		a.error = math.Abs(a.estimate-previous) / extrapolationGain
+		last := a.runs[n-1].parameter
+		if ok && n > 2 && a.error < tolerance {
+			wrong, err := a.refuted(ctx, a.estimate+(a.estimate-last))
+			if !wrong || err != nil {
+				return err
+			}
+			continue
+		}
+		share := remaining
+		if !ok {
+			share = 0.5
+		}
+		next = a.below(a.estimate - share*(a.estimate-last))
+	}
+	return fmt.Errorf("no threshold found in %d runs: it lies between %v and %v", runCap, a.low, a.high)
+}
+
+// refuted tells whether a run above the estimate succeeds, as it must not.
+func (a *approach) refuted(ctx context.Context, above float64) (bool, error) {
+	estimate, failures := a.estimate, a.critical
+	if above >= a.high {
+		return false, nil
+	}
+	ok, err := a.run(ctx, above)
+	if ok {
+		a.predict()
+		return true, err
+	}
+	a.estimate, a.critical = estimate, failures
+	return false, err
+}
+
+// below returns the parameter, or one below high if it is not.
+func (a *approach) below(parameter float64) float64 {
+	last := a.runs[len(a.runs)-1].parameter
+	if parameter < a.high {
+		return parameter
+	}
+	return last + (a.high-last)*(1-remaining)
+}
+
+// predict sets the estimate from the last runs.
+func (a *approach) predict() {
+	a.critical = closings(a.runs[max(0, len(a.runs)-3):])
+	a.estimate = min(a.bound, a.high)
+	if len(a.critical) > 0 {
+		a.estimate = min(a.estimate, a.critical[0].parameter)
+	}
+}
+
+// places lists the critical places of the last runs.
+func (a *approach) places() []Critical {
+	all := append([]closing{{parameter: a.bound}}, a.critical...)
+	first := all[0].parameter
+	for _, c := range all {
+		first = min(first, c.parameter)
+	}
+	var out []Critical
+	for _, c := range all {
+		if slack := c.parameter/first - 1; slack <= criticalSlack {
+			out = append(out, Critical{Entropy: c.entropy, Slack: slack})
+		}
+	}
+	slices.SortStableFunc(out, func(x, y Critical) int { return int(math.Copysign(1, x.Slack-y.Slack)) })
+	return out
+}

@@ -1,0 +1,66 @@
+package density
+
+import "tannery/ensembles"
+
+// polynomial evaluates Σ fᵢ z^(i-1), the generating function of a degree
+// distribution. Each term multiplies its predecessor's power by z to the gap
+// between their degrees, by repeated squaring, so the cost grows with the
+// number of terms and with the logarithm of the gaps, not with the degrees.
+type polynomial []step
+
+// step multiplies the running power by z^gap and adds it with its weight.
+type step struct {
+	gap    uint
+	weight float64
+}
+
+func newPolynomial(d ensembles.Distribution) polynomial {
+	p := make(polynomial, len(d))
+	exponent := 0
+	for i, t := range d {
+		p[i] = step{uint(t.Degree - 1 - exponent), t.Fraction}
+		exponent = t.Degree - 1
+	}
+	return p
+}
+
+// at evaluates at a real point.
+func (p polynomial) at(z float64) float64 {
+	power, sum := 1.0, 0.0
+	for _, t := range p {
+		square := z
+		for gap := t.gap; gap != 0; gap >>= 1 {
+			if gap&1 != 0 {
+				power *= square
+			}
+			square *= square
+		}
+		sum += t.weight * power
+	}
+	return sum
+}
+
+// atPair evaluates at two complex points, together to keep the processor's
+// arithmetic units busy.
+func (p polynomial) atPair(y, z complex128) (complex128, complex128) {
+	powerY, powerZ := complex(1, 0), complex(1, 0)
+	var re0, im0, re1, im1 float64
+	for _, t := range p {
+		squareY, squareZ := y, z
+		for gap := t.gap; gap != 0; {
+			if gap&1 != 0 {
+				powerY *= squareY
+				powerZ *= squareZ
+			}
+			if gap >>= 1; gap != 0 {
+				squareY *= squareY
+				squareZ *= squareZ
+			}
+		}
+		re0 += t.weight * real(powerY)
+		im0 += t.weight * imag(powerY)
+		re1 += t.weight * real(powerZ)
+		im1 += t.weight * imag(powerZ)
+	}
+	return complex(re0, im0), complex(re1, im1)
+}

@@ -1,0 +1,75 @@
+package density
+
+import "tannery/ensembles"
+
+// VariableNode turns the density of messages from check nodes into that of
+// messages from variable nodes of the degree distribution λ: the mixture over
+// degrees i of the sum of the channel's LLR and i-1 independent messages. In
+// the even functions g sums are convolutions, done by cosine transforms and
+// powers per frequency.
+//
+// A VariableNode holds working space: use one per goroutine.
+type VariableNode struct {
+	grid     *Grid
+	edges    polynomial // λ
+	nodes    polynomial // Σ Lᵢ z^i = z·Σ Lᵢ z^(i-1)
+	cosine   *cosine
+	channel  []float64 // transform of the channel's g
+	incoming []float64 // transform of the incoming messages' g
+	errors   []float64 // weights of a transform in the error probability
+}
+
+// NewVariableNode returns the operation for the edge-perspective distribution
+// lambda, with channel as the density of the channel's LLR.
+func (g *Grid) NewVariableNode(lambda ensembles.Distribution, channel *Density) *VariableNode {
+	v := &VariableNode{
+		grid:     g,
+		edges:    newPolynomial(lambda),
+		nodes:    newPolynomial(lambda.Nodes()),
+		cosine:   newCosine(g.points),
+		channel:  make([]float64, g.points+1),
+		incoming: make([]float64, g.points+1),
+		errors:   make([]float64, g.points+1),
+	}
+	v.cosine.transform(v.channel, channel.even)
+	// The error probability is Σ wₖgₖ with g the inverse transform. As the
+	// transform counts inner values twice, so do the weights of its adjoint.
+	for k, w := range g.errorWeight {
+		if k > 0 && k < g.points {
+			w /= 2
+		}
+		v.errors[k] = w / float64(2*g.points)
+	}
+	v.cosine.transform(v.errors, v.errors)
+	for k := 1; k < g.points; k++ {
+		v.errors[k] *= 2
+	}
+	return v
+}
+
+// Apply sets dst to the density of the outgoing messages for incoming ones of
+// density src; both of the operation's grid, and may be the same.
+func (v *VariableNode) Apply(dst, src *Density) {
+	v.cosine.transform(v.incoming, src.even)
+	spectrum := dst.even
+	for k, z := range v.incoming {
+		spectrum[k] = v.edges.at(z) * v.channel[k]
+	}
+	v.cosine.transform(spectrum, spectrum)
+	scale := 1 / float64(2*v.grid.points)
+	for k := range spectrum {
+		spectrum[k] *= scale
+	}
+	dst.settle()
+}
+
+// DecisionError returns the error probability of the decision on a bit, which
+// adds the channel's LLR and all incoming messages, for the incoming messages
+// of the last Apply. The fractions over nodes are used.
+func (v *VariableNode) DecisionError() float64 {
+	sum := 0.0
+	for k, z := range v.incoming {
+		sum += v.errors[k] * v.channel[k] * z * v.nodes.at(z)
+	}
+	return sum
+}

@@ -1,0 +1,112 @@
+package de
+
+import (
+	"context"
+	"fmt"
+	"math"
+
+	"tannery/de/channel"
+	"tannery/de/density"
+	"tannery/ensembles"
+)
+
+// QuantizedEngine finds thresholds by evolving quantised message densities,
+// on any channel family. The zero value works.
+type QuantizedEngine struct {
+	// Tolerance is the uncertainty to reach, relative to the threshold;
+	// 0 means DefaultTolerance. Finer grids are taken until it is reached
+	// or the grid has 4096 points.
+	Tolerance float64
+}
+
+var _ Engine = QuantizedEngine{}
+
+const (
+	// DefaultTolerance is the relative uncertainty of QuantizedEngine.
+	DefaultTolerance = 1e-6
+	// coarsestPoints and finestPoints are the numbers of points of the first
+	// and the last grid tried.
+	coarsestPoints = 128
+	finestPoints   = 4096
+)
+
+// Method returns Quantized.
+func (QuantizedEngine) Method() Method { return Quantized }
+
+// Threshold evolves the ensemble on grids of doubling fineness, on each of
+// which the threshold is extrapolated from runs below it (see closing.go),
+// until the thresholds of two grids agree.
+func (q QuantizedEngine) Threshold(ctx context.Context, e ensembles.Ensemble, f channel.Family) (Threshold, error) {
+	t := Threshold{Method: Quantized}
+	best, _ := f.Range()
+	if e.Lambda.Fraction(1) > 0 {
+		t.Value, t.Warnings = best, []string{degreeOneWarning}
+		return t, nil
+	}
+	tolerance := q.Tolerance
+	if tolerance == 0 {
+		tolerance = DefaultTolerance
+	}
+	a := approach{e: e, f: f}
+	if err := a.bracket(ctx); err != nil {
+		return t, err
+	}
+	if a.high <= a.low {
+		// Certain success and certain failure meet: cycle codes, say, whose
+		// stability bound is that of the Bhattacharyya recursion.
+		t.Value, t.Critical = a.high, []Critical{{}}
+		return t, nil
+	}
+	if f.Name() == bec {
+		// Masses at 0 and at infinity have nodes of their own, so that the
+		// grid makes no error and more can be asked of the approach.
+		tolerance = min(tolerance, becTolerance)
+	}
+	absolute := tolerance * a.estimate / 4
+	bracketed := a
+	for points := coarsestPoints; ; points *= 2 {
+		grid, err := density.NewGrid(points)
+		if err != nil {
+			return t, err
+		}
+		coarse := a
+		a = bracketed
+		a.grid = grid
+		difference := math.Inf(1)
+		transferred := false
+		if points > coarsestPoints && len(coarse.runs) >= 3 {
+			transferred, err = a.transfer(ctx, &coarse, absolute)
+			t.Iterations += a.iterations
+		}
+		if err == nil && !transferred {
+			guess, distance := bracketed.estimate, bracketed.start()
+			a = bracketed
+			a.grid = grid
+			err = a.find(ctx, guess, distance, absolute)
+			t.Iterations += a.iterations
+		}
+		if err != nil {
+			return t, err
+		}
+		if points > coarsestPoints {
+			difference = math.Abs(a.estimate - coarse.estimate)
+		}
+		t.Value = a.estimate
+		t.Uncertainty = a.error + difference/gridGain
+		t.Critical = a.places()
+		if t.Uncertainty <= tolerance*t.Value {
+			return t, nil
+		}
+		if points == finestPoints {
+			t.Warnings = append(t.Warnings, fmt.Sprintf("the uncertainty asked for, %.2g, was not reached on the finest grid", tolerance*t.Value))
+			return t, nil
+		}
+	}
+}
+
+// becTolerance is the tolerance on the BEC.
+const becTolerance = 2e-9
+
+// gridGain is by how much the error of a grid is at least smaller than its
+// difference from the grid half as fine. Fourth order would make it 15.
+const gridGain = 4
