@@ -60,6 +60,7 @@ type erasureSearch struct {
 	e         *ensembles.Ensemble
 	tolerance float64
 	best      float64 // least f found
+	bestLog   float64 // its logarithm
 	lower     float64 // f is proved not to go below this
 	points    int     // evaluations of f
 
@@ -71,13 +72,14 @@ type erasureSearch struct {
 func (s *erasureSearch) point(t float64) erasurePoint {
 	s.points++
 	p := erasureAtLog(s.e, t)
-	s.best = math.Min(s.best, p.f)
+	if p.f < s.best {
+		s.best, s.bestLog = p.f, p.g
+	}
 	return p
 }
 
 // note records a local minimum.
 func (s *erasureSearch) note(x, f float64) {
-	s.best = math.Min(s.best, f)
 	if s.found < maxMinima {
 		s.minima[s.found] = localMinimum{x, f}
 		s.found++
@@ -92,6 +94,7 @@ func (s *erasureSearch) run() {
 		stability = 1 / (l2 * slope0)
 	}
 	s.best = math.Min(1, stability)
+	s.bestLog = math.Log(s.best)
 	s.tolerance = boundTolerance
 	for limit := maxPoints; !s.branch(slope0, stability, limit); limit += maxPoints {
 		s.tolerance *= relaxation
@@ -121,26 +124,25 @@ func (s *erasureSearch) branch(slope0, stability float64, limit int) bool {
 		n++
 	}
 
-	s.lower = s.best * (1 - s.tolerance)
+	s.lower = math.Inf(1)
 	a := pending[n-1]
 	for n--; n > 0; {
 		b := &pending[n-1]
-		bound, done := s.bound(&a, b)
-		if !done {
+		if bound, enough := s.bound(&a, b); !enough {
 			if s.points >= limit {
 				return false
 			}
-			middle := 0.5 * (a.t + b.t)
-			if n < maxPending && a.t < middle && middle < b.t {
+			if middle := 0.5 * (a.t + b.t); n < maxPending && a.t < middle && middle < b.t {
 				pending[n] = s.point(middle)
 				n++
 				continue
 			}
+			s.lower = math.Min(s.lower, bound)
 		}
-		s.lower = math.Min(s.lower, bound)
 		a = *b
 		n--
 	}
+	s.lower = math.Min(s.lower, s.best*(1-s.tolerance))
 	return true
 }
 
@@ -178,12 +180,11 @@ func (s *erasureSearch) decidedAtZero(b *erasurePoint, slope0, stability float64
 	return curvature0/2*b.x/b.y <= s.e.Lambda.Fraction(3)*overY*b.dy // decreasing
 }
 
-// bound returns a lower bound of f on [a,b] and whether nothing better is
-// needed: the bound is no less than the best found, or exact.
-func (s *erasureSearch) bound(a, b *erasurePoint) (bound float64, done bool) {
-	enough := s.best * (1 - s.tolerance)
+// bound tells whether f on [a,b] is known to be no less than the best found,
+// up to the tolerance; where it is not, the bound says how low f may be.
+func (s *erasureSearch) bound(a, b *erasurePoint) (bound float64, enough bool) {
 	bound = a.x / a.y * (b.f / b.x * b.y)
-	if bound >= enough {
+	if bound >= s.best*(1-s.tolerance) {
 		return bound, true
 	}
 	c := curvatureBound(a, b)
@@ -197,16 +198,17 @@ func (s *erasureSearch) bound(a, b *erasurePoint) (bound float64, done bool) {
 	// their difference is linear in u.
 	h := b.t - a.t
 	atA := b.g - h*(b.slope-0.5*c*h) - a.g // second minus first at u = 0
-	slope := b.slope - c*h - a.slope
-	u := -atA / slope
+	u := -atA / (b.slope - c*h - a.slope)
 	low := math.Min(a.g, b.g)
 	if u > 0 && u < h {
 		low = math.Min(low, a.g+u*(a.slope+0.5*c*u))
 	} else if !(u <= 0 || u >= h) {
 		return bound, false // g overflowed
 	}
-	bound = math.Max(bound, math.Exp(low))
-	return bound, bound >= enough
+	if low >= s.bestLog-s.tolerance {
+		return bound, true
+	}
+	return math.Max(bound, math.Exp(low)), false
 }
 
 // curvatureBound returns a lower bound of g″ on [a,b].

@@ -44,8 +44,9 @@ type erasurePoint struct {
 const resync = 32
 
 // largestFactor is the largest step in degree for which a running power is
-// advanced by multiplication; beyond it e^(n·ln y) is faster and more exact.
-const largestFactor = 8
+// advanced by repeated squaring; beyond it e^(n·ln y) is faster, and the
+// rounding of squaring, which grows with the step, would show.
+const largestFactor = 32
 
 // check returns y = 1-ρ(z), ρ(z), ρ'(z) and ρ″(z) for z = 1-x, with y to full
 // relative precision however small x is.
@@ -84,9 +85,7 @@ func variable(lambda ensembles.Distribution, y, r float64) (sum, first, second, 
 	power, degree, products := 1.0, least, 0
 	for _, t := range lambda {
 		if step := t.Degree - degree; step <= largestFactor && products < resync {
-			for ; step > 0; step-- {
-				power *= y
-			}
+			power *= ensembles.Power(y, step)
 			products++
 		} else {
 			if logY != logY {

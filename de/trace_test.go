@@ -69,7 +69,7 @@ func TestTraceLaws(t *testing.T) {
 				continue
 			}
 			var worse Trace
-			for _, factor := range []float64{1.02, 1.001, .999, .98, .7} {
+			for _, factor := range []float64{1.02, 1.005, .995, .98, .7} {
 				parameter := threshold.Value * factor
 				if _, worst := s.family.Range(); parameter > worst {
 					continue
