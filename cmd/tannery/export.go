@@ -25,8 +25,8 @@ type exportOptions struct {
 func newExport() *cobra.Command {
 	o := &exportOptions{length: integerOption{low: 2, high: ensembles.MaxLength}}
 	cmd := &cobra.Command{
-		Use:   "export PROFILE --length N",
-		Short: "the same profile as exact integer node counts, for a parity-check constructor",
+		Use:   "export PROFILE --length N [options]",
+		Short: "a profile as exact integer node counts",
 		Example: `# counts for 64800 code bits, with the thresholds of the integer profile
 tannery export harbour.yaml --length 64800 -o harbour-64800.yaml
 # to another program, without a file

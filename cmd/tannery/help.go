@@ -25,7 +25,9 @@ func printHelp(cmd *cobra.Command, _ []string) {
 		}
 	}
 	if cmd.Long != "" {
-		fmt.Fprintf(&b, "\n%s\n", cmd.Long)
+		for paragraph := range strings.SplitSeq(cmd.Long, "\n\n") {
+			fmt.Fprintf(&b, "\n%s\n", strings.Join(report.Wrap(paragraph, report.Width), "\n"))
+		}
 	}
 	if cmd.HasAvailableSubCommands() {
 		b.WriteString("\nCommands\n")

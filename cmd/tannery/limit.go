@@ -32,8 +32,8 @@ func newLimit() *cobra.Command {
 		frameError:        numberOption{allow: document.Between(0, 1)},
 	}
 	cmd := &cobra.Command{
-		Use:   "limit",
-		Short: "the Shannon limit: what rate a channel allows, and for a link whether its source fits",
+		Use:   "limit [options]",
+		Short: "what rate a channel allows, or a link needs",
 		Example: `# the worst noise at which rate 1/2 can be had
 tannery limit --channel biawgn --rate 0.5
 # the capacity at a channel parameter, or at Es/N0 in dB
@@ -48,9 +48,10 @@ tannery limit --channel biawgn --parameter 0.94 --source-rate 9600 \
 tannery limit --channel biawgn --rate 0.5 --length 2048 --frame-error 1e-4
 # any discrete memoryless channel, a row of output probabilities per input
 tannery limit --matrix buoy.csv`,
-		Long: `With a channel parameter: the capacity there. With a rate: the parameter at
-which the capacity equals it. With both: whether the rate is below capacity, by
-what margin, and if not the lowest bit error rate that anybody can reach.
+		Long: `The Shannon limit in all its forms. With a channel parameter: the capacity there.
+With a rate: the parameter at which the capacity equals it. With both: whether
+the rate is below capacity, by what margin, and if not the lowest bit error rate
+that anybody can reach.
 
 A link (--source-rate and --symbol-rate) fits if the entropy of its source is at
 most the capacity times the symbol rate. With --length the normal approximation

@@ -4,6 +4,9 @@ import (
 	"github.com/spf13/cobra"
 )
 
+// Commands are listed in the order in which an engineer meets them.
+func init() { cobra.EnableCommandSorting = false }
+
 // newRoot assembles the command tree. Nothing is shared between two trees,
 // so that tests may run side by side.
 func newRoot() *cobra.Command {
@@ -56,10 +59,15 @@ tannery export link.yaml --length 64800 -o link-64800.yaml`,
 	root.SetHelpCommand(&cobra.Command{Use: "help [COMMAND]", Hidden: true, RunE: helpOf})
 	root.AddCommand(commands()...)
 	root.InitDefaultCompletionCmd()
-	for _, c := range root.Commands() {
+	root.InitDefaultVersionFlag()
+	root.Flags().Lookup("version").Usage = "the version"
+	for _, c := range append(root.Commands(), root) {
 		if c.Name() == "completion" {
 			c.Short = "completion of commands, options and names for your shell"
 		}
+		c.DisableFlagsInUseLine = true
+		c.InitDefaultHelpFlag()
+		c.Flags().Lookup("help").Usage = "this text"
 	}
 	return root
 }

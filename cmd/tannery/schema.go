@@ -13,7 +13,7 @@ func newSchema() *cobra.Command {
 	names := []string{"profile", "brief"}
 	return &cobra.Command{
 		Use:   "schema profile|brief",
-		Short: "the form of a file as JSON Schema (draft-07), for editors and other programs",
+		Short: "the form of a file as JSON Schema (draft-07)",
 		Example: `# let an editor check profiles while they are written
 tannery schema profile > profile.schema.json
 # then, as the first line of the profile:

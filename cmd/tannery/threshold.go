@@ -27,8 +27,8 @@ func newThreshold() *cobra.Command {
 		targetError: numberOption{allow: document.Between(0, 0.5), value: 1e-6},
 	}
 	cmd := &cobra.Command{
-		Use:   "threshold PROFILE",
-		Short: "the decoding threshold of a profile, and its gap to the Shannon limit",
+		Use:   "threshold PROFILE [options]",
+		Short: "how noisy a channel a profile decodes, and how far from the limit",
 		Example: `# of a profile on the channel that its results name
 tannery threshold harbour.yaml
 # of the (3,6) ensemble on the BEC, exactly, as JSON
@@ -86,11 +86,20 @@ func runThreshold(cmd *cobra.Command, args []string, o *thresholdOptions) error 
 }
 
 func (o *thresholdOptions) answer(ctx context.Context, engine de.Engine, p ensembles.Profile, f channel.Family) (*report.Threshold, error) {
-	e := p.Ensemble
-	threshold, err := o.measure(ctx, engine, e, f)
+	threshold, err := o.measure(ctx, engine, p.Ensemble, f)
 	if err != nil {
 		return nil, err
 	}
+	answer := thresholdAnswer(p, f, threshold)
+	if o.iterations.given {
+		answer.Limited = &report.LimitedTarget{Iterations: o.iterations.value, TargetError: o.targetError.value}
+	}
+	return answer, nil
+}
+
+// thresholdAnswer sets a threshold beside what is possible.
+func thresholdAnswer(p ensembles.Profile, f channel.Family, threshold de.Threshold) *report.Threshold {
+	e := p.Ensemble
 	answer := &report.Threshold{
 		Schema:             "tannery/threshold/1",
 		Channel:            f.Name(),
@@ -116,19 +125,16 @@ func (o *thresholdOptions) answer(ctx context.Context, engine de.Engine, p ensem
 	if f.Name() == (channel.BEC{}).Name() && answer.DesignRate > 0 {
 		answer.MAPBound = new(de.MAPUpperBound(e))
 	}
-	if o.iterations.given {
-		answer.Limited = &report.LimitedTarget{Iterations: o.iterations.value, TargetError: o.targetError.value}
-	}
 	stability := de.StabilityOf(e, f, threshold.Value)
 	answer.Stability = report.Stability{Bound: report.Finite(stability.Bound), Margin: report.Finite(stability.Margin)}
 	assessment, err := de.Assess(e, f, threshold)
 	if err != nil { // a design rate without a Shannon limit
 		answer.Warnings = append(answer.Warnings, err.Error())
-		return answer, nil
+		return answer
 	}
 	gap := report.Gap(gapOf(assessment))
 	answer.Limit, answer.Gap = &assessment.Limit, &gap
-	return answer, nil
+	return answer
 }
 
 // measure finds the threshold, with the limit on iterations if there is one.

@@ -22,8 +22,8 @@ type traceOptions struct {
 func newTrace() *cobra.Command {
 	o := &traceOptions{iterations: integerOption{low: 1, high: maxIterations, value: 1000}}
 	cmd := &cobra.Command{
-		Use:   "trace PROFILE",
-		Short: "the evolution of a profile at one channel parameter, iteration by iteration",
+		Use:   "trace PROFILE [options]",
+		Short: "the evolution of a profile, iteration by iteration",
 		Example: `# how a profile decodes at σ = 0.94, and where its tunnel is narrowest
 tannery trace harbour.yaml --channel biawgn --parameter 0.94
 # the same at Eb/N0 in dB, every iteration as CSV

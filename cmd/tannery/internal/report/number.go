@@ -85,3 +85,13 @@ func DecimalsAt(u float64, least, most int) int {
 	}
 	return min(most, max(least, -int(math.Floor(math.Log10(u)))))
 }
+
+// atMost returns a bound for a small number: the power of ten it is below,
+// 1e-9 at least.
+func atMost(v float64) string {
+	exponent := -maxDecimals
+	for exponent < 0 && v > math.Pow10(exponent) {
+		exponent++
+	}
+	return fmt.Sprintf("1e%d", exponent)
+}

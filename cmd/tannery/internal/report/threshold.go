@@ -99,13 +99,7 @@ func (r *Threshold) thresholdRows(t *Text) {
 		t.Row("MAP decoding", "no threshold above %s = %s", r.Symbol, Fixed(*r.MAPBound, decimals))
 	}
 	t.Row("stability", "%s", r.Stability.text(r.Symbol, decimals))
-	for i, c := range r.Critical {
-		label := "tunnel closes"
-		if i > 0 {
-			label = "next tightest"
-		}
-		t.Row(label, "%s", c.text())
-	}
+	criticalRows(t, r.Critical)
 	for i, warning := range r.Warnings {
 		label := "note"
 		if i > 0 {
@@ -146,13 +140,25 @@ func (s Stability) text(symbol string, decimals int) string {
 // leave some.
 const closed = 1e-6
 
-func (c Critical) text() string {
-	where := fmt.Sprintf("at message entropy %s bit", Significant(c.Entropy, 4))
-	if c.Entropy == 0 {
-		where = "at the end, by the stability condition"
+// criticalRows tells where the tunnel closes at the threshold, and where it is
+// nearly closed.
+func criticalRows(t *Text, critical []Critical) {
+	var shut, narrow []string
+	for _, c := range critical {
+		where := Significant(c.Entropy, 4)
+		if c.Entropy == 0 {
+			where = "0 (by the stability condition)"
+		}
+		if c.Slack > closed {
+			narrow = append(narrow, fmt.Sprintf("%s (open by %s %%)", where, Significant(100*c.Slack, 2)))
+		} else {
+			shut = append(shut, where)
+		}
 	}
-	if c.Slack > closed {
-		where += fmt.Sprintf(", open by %s %%", Significant(100*c.Slack, 2))
+	if len(shut) > 0 {
+		t.Row("tunnel closes", "at message entropy %s bit", strings.Join(shut, ", "))
 	}
-	return where
+	if len(narrow) > 0 {
+		t.Row("nearly closes", "at %s", strings.Join(narrow, ", "))
+	}
 }
