@@ -1,6 +1,7 @@
 package main
 
 import (
+	"context"
 	"errors"
 	"fmt"
 	"io"
@@ -15,7 +16,7 @@ const maxInput = 64 << 20
 
 // readInput reads a file whole, or standard input for "-", and returns the
 // name to use for it in errors. A file that is not there is wrong usage.
-func readInput(path string, stdin io.Reader) (content []byte, name string, err error) {
+func readInput(ctx context.Context, path string, stdin io.Reader) (content []byte, name string, err error) {
 	if path == "" {
 		return nil, "", usagef("file name \"\": must be a file, or - for standard input")
 	}
@@ -28,7 +29,10 @@ func readInput(path string, stdin io.Reader) (content []byte, name string, err e
 		defer f.Close()
 		name, source = path, f
 	}
-	content, err = io.ReadAll(io.LimitReader(source, maxInput+1))
+	content, err = readAll(ctx, source)
+	if ctx.Err() != nil {
+		return nil, name, context.Cause(ctx)
+	}
 	if err != nil {
 		return nil, name, invalid(inputError(name, err))
 	}
@@ -36,6 +40,22 @@ func readInput(path string, stdin io.Reader) (content []byte, name string, err e
 		return nil, name, usagef("%s: larger than %d bytes, the most that is read", name, maxInput)
 	}
 	return content, name, nil
+}
+
+// readAll reads up to one byte more than maxInput, or until ctx ends: a
+// terminal or a pipe may never say anything.
+func readAll(ctx context.Context, source io.Reader) (content []byte, err error) {
+	done := make(chan struct{})
+	go func() {
+		content, err = io.ReadAll(io.LimitReader(source, maxInput+1))
+		close(done)
+	}()
+	select {
+	case <-done:
+		return content, err
+	case <-ctx.Done():
+		return nil, ctx.Err()
+	}
 }
 
 // inputError says once which file could not be read, and why.

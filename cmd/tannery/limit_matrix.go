@@ -14,7 +14,7 @@ import (
 // runMatrix answers limit for a channel given as a transition matrix, with a
 // link over it if one is asked about.
 func runMatrix(cmd *cobra.Command, o *limitOptions) error {
-	content, name, err := readInput(o.matrix, cmd.InOrStdin())
+	content, name, err := readInput(cmd.Context(), o.matrix, cmd.InOrStdin())
 	if err != nil {
 		return err
 	}

@@ -3,11 +3,14 @@ package main
 import (
 	"bufio"
 	"bytes"
+	"context"
 	"errors"
 	"os"
 	"os/exec"
 	"strings"
+	"syscall"
 	"testing"
+	"time"
 )
 
 // asTannery makes the test binary behave as the program, for what only shows
@@ -15,8 +18,15 @@ import (
 const asTannery = "TANNERY_AS_PROCESS"
 
 func TestMain(m *testing.M) {
-	if os.Getenv(asTannery) != "" {
+	switch os.Getenv(asTannery) {
+	case "1":
 		main()
+	case "stubborn":
+		ctx, _ := withSignals(context.Background())
+		os.Stdout.WriteString("ready\n")
+		<-ctx.Done()
+		os.Stdout.WriteString("first\n")
+		time.Sleep(time.Hour)
 	}
 	os.Exit(m.Run())
 }
@@ -30,6 +40,7 @@ func process(t *testing.T, args ...string) (cmd *exec.Cmd, stderr *bytes.Buffer)
 	}
 	cmd = exec.CommandContext(t.Context(), self, args...)
 	cmd.Env = append(os.Environ(), asTannery+"=1")
+	cmd.WaitDelay = time.Second
 	stderr = &bytes.Buffer{}
 	cmd.Stderr = stderr
 	return cmd, stderr
@@ -66,5 +77,61 @@ func TestClosedPipe(t *testing.T) {
 	pipe.Close()
 	if code := exitOf(t, cmd.Wait()); code != exitClosedPipe || stderr.Len() > 0 {
 		t.Errorf("exit code %d, stderr %q; want %d and nothing", code, stderr, exitClosedPipe)
+	}
+}
+
+// A signal ends a command that waits for its input.
+func TestSignalWhileReading(t *testing.T) {
+	for _, c := range []struct {
+		signal syscall.Signal
+		code   int
+		want   string
+	}{
+		{syscall.SIGINT, 130, "tannery: interrupted\n"},
+		{syscall.SIGTERM, 143, "tannery: ended by SIGTERM\n"},
+	} {
+		cmd, stderr := process(t, "threshold", "-", "--channel", "bec")
+		stdin, err := cmd.StdinPipe()
+		if err != nil {
+			t.Fatal(err)
+		}
+		if err := cmd.Start(); err != nil {
+			t.Fatal(err)
+		}
+		// More than a pipe holds: once it is taken, the command is reading.
+		if _, err := stdin.Write(bytes.Repeat([]byte("# harbour\n"), 50_000)); err != nil {
+			t.Fatal(err)
+		}
+		if err := cmd.Process.Signal(c.signal); err != nil {
+			t.Fatal(err)
+		}
+		if code := exitOf(t, cmd.Wait()); code != c.code || stderr.String() != c.want {
+			t.Errorf("%v: exit code %d, stderr %q; want %d and %q", c.signal, code, stderr, c.code, c.want)
+		}
+	}
+}
+
+// A second signal ends the process at once, whatever it does.
+func TestSecondSignal(t *testing.T) {
+	cmd, _ := process(t)
+	cmd.Env = append(os.Environ(), asTannery+"=stubborn")
+	pipe, err := cmd.StdoutPipe()
+	if err != nil {
+		t.Fatal(err)
+	}
+	if err := cmd.Start(); err != nil {
+		t.Fatal(err)
+	}
+	lines := bufio.NewScanner(pipe)
+	for _, want := range []string{"ready", "first"} {
+		if !lines.Scan() || lines.Text() != want {
+			t.Fatalf("%q, want %q", lines.Text(), want)
+		}
+		if err := cmd.Process.Signal(syscall.SIGINT); err != nil {
+			t.Fatal(err)
+		}
+	}
+	if code := exitOf(t, cmd.Wait()); code != 130 {
+		t.Errorf("exit code %d, want 130", code)
 	}
 }

@@ -40,7 +40,7 @@ func (o *profileOptions) read(cmd *cobra.Command, args []string) (ensembles.Prof
 		}
 		return ensembles.Profile{Ensemble: e}, nil, nil
 	}
-	content, name, err := readInput(args[0], cmd.InOrStdin())
+	content, name, err := readInput(cmd.Context(), args[0], cmd.InOrStdin())
 	if err != nil {
 		return none, nil, err
 	}

@@ -65,7 +65,7 @@ func (o *searchOptions) brief(cmd *cobra.Command, args []string) (brief.Brief, e
 	}
 	draft := brief.New()
 	if len(args) > 0 {
-		content, name, err := readInput(args[0], cmd.InOrStdin())
+		content, name, err := readInput(cmd.Context(), args[0], cmd.InOrStdin())
 		if err != nil {
 			return brief.Brief{}, err
 		}

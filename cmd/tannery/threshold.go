@@ -132,10 +132,16 @@ func thresholdAnswer(p ensembles.Profile, f channel.Family, threshold de.Thresho
 		answer.Warnings = append(answer.Warnings, err.Error())
 		return answer
 	}
+	if assessment.Gap.Parameter < -threshold.Uncertainty {
+		answer.Warnings = append(answer.Warnings, beyondLimit)
+	}
 	gap := report.Gap(gapOf(assessment))
 	answer.Limit, answer.Gap = &assessment.Limit, &gap
 	return answer
 }
+
+// beyondLimit is said of a threshold that no code can have.
+const beyondLimit = "the threshold lies beyond the Shannon limit, which no decoder can reach: the method's approximation does not hold for this profile"
 
 // measure finds the threshold, with the limit on iterations if there is one.
 func (o *thresholdOptions) measure(ctx context.Context, engine de.Engine, e ensembles.Ensemble, f channel.Family) (de.Threshold, error) {
