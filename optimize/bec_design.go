@@ -83,6 +83,8 @@ func (e erasureDesigner) best(ctx context.Context, rho ensembles.Distribution, d
 
 func (e erasureDesigner) at(c *candidate) *design { return e.design(c.rho, c.degrees) }
 
+func (erasureDesigner) free() bool { return true }
+
 // finish measures the best by the exact engine. Should that find a point that
 // the grid of the search has missed, the point is added and λ found again.
 func (BECDesign) finish(p Problem, r *run) (Result, error) {

@@ -15,6 +15,9 @@ type designer interface {
 	best(ctx context.Context, rho ensembles.Distribution, degrees []int, near *candidate) (*candidate, error)
 	// at returns the linear programme of which the candidate is the answer.
 	at(c *candidate) *design
+	// free tells whether its analysis holds for any ρ, and not only for ρ on
+	// two neighbouring degrees.
+	free() bool
 }
 
 // The names of the limits, for Result.Binding.
@@ -73,6 +76,10 @@ func searchChecks(ctx context.Context, p Problem, r *run, d designer) error {
 		if best, stop, err = searchDistinct(ctx, m, best); stop || err != nil || best == nil {
 			return err
 		}
+	}
+	if !d.free() {
+		r.report(doneFree)
+		return nil
 	}
 	r.enter(phaseFree)
 	return searchFree(ctx, p, r, d, best)

@@ -22,6 +22,8 @@ type erasureTunnel struct {
 
 	x  []float64 // on the grid; made when first used
 	by map[int][]float64
+
+	last, lastX float64 // the point asked for last
 }
 
 const (
@@ -132,7 +134,10 @@ func checkInverse(rho ensembles.Distribution, logarithm float64) float64 {
 
 // erasureX returns x at p.
 func (e *erasureTunnel) erasureX(p float64) float64 {
-	return -math.Expm1(checkInverse(e.rho, -softplus(-p)))
+	if p != e.last || e.lastX == 0 {
+		e.last, e.lastX = p, -math.Expm1(checkInverse(e.rho, -softplus(-p)))
+	}
+	return e.lastX
 }
 
 // erasureY returns y = 1-ρ(1-x), precise for small x too.

@@ -47,7 +47,7 @@ type degreeTwo struct {
 	factor  float64 // 0 if it is a bound
 	bound   float64
 	byCheck func(j int) float64 // derivative of the factor or bound by ρⱼ
-	byMean  float64             // that by the mean LLR of the channel
+	byMean  float64             // that by the mean LLR of the channel, where it has one
 }
 
 // design is the linear programme for one ρ and channel.
