@@ -5,6 +5,7 @@ import (
 	"io"
 	"os"
 	"time"
+	"unicode/utf8"
 
 	"github.com/schollz/progressbar/v3"
 )
@@ -35,7 +36,7 @@ func newProgress(w io.Writer, hidden bool) *progress {
 	if isTerminal(w) && os.Getenv("TERM") != "dumb" {
 		p.bar = progressbar.NewOptions(barSteps,
 			progressbar.OptionSetWriter(w),
-			progressbar.OptionSetWidth(20),
+			progressbar.OptionSetWidth(14),
 			progressbar.OptionSetPredictTime(false),
 			progressbar.OptionSetElapsedTime(false),
 			progressbar.OptionThrottle(100*time.Millisecond),
@@ -57,19 +58,31 @@ func isTerminal(w io.Writer) bool {
 	return err == nil && info.Mode()&os.ModeCharDevice != 0
 }
 
+// textWidth is the room that the bar leaves on a line of 80 columns.
+const textWidth = 56
+
+// label joins what is known into one line, and shortens the phase where the
+// line would be too long for the bar beside it.
+func label(phase, best, left string) string {
+	rest := ""
+	for _, part := range []string{best, left} {
+		if part != "" {
+			rest += ", " + part
+		}
+	}
+	if room := textWidth - utf8.RuneCountInString(rest); utf8.RuneCountInString(phase) > room {
+		phase = string([]rune(phase)[:max(0, room-1)]) + "…"
+	}
+	return phase + rest
+}
+
 // update shows the phase, how much of the work is done (from 0 to 1) and the
 // best so far in words.
 func (p *progress) update(phase string, done float64, best string) {
 	if p == nil {
 		return
 	}
-	text := phase
-	if best != "" {
-		text += ", " + best
-	}
-	if left := remaining(time.Since(p.start), done); left != "" {
-		text += ", " + left
-	}
+	text := label(phase, best, remaining(time.Since(p.start), done))
 	switch {
 	case p.bar != nil:
 		p.bar.Describe(text)

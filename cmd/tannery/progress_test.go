@@ -50,3 +50,14 @@ func TestRemaining(t *testing.T) {
 		}
 	}
 }
+
+func TestLabelLeavesRoomForTheBar(t *testing.T) {
+	for _, phase := range []string{"mean", strings.Repeat("λ and ρ ", 20)} {
+		for _, left := range []string{"", "10h20m30s left"} {
+			got := label(phase, "best gap 0.00002 in ε", left)
+			if n := len([]rune(got)); n > textWidth || !strings.HasSuffix(got, left) || !strings.Contains(got, "best gap") {
+				t.Errorf("%d columns: %q", n, got)
+			}
+		}
+	}
+}
