@@ -115,7 +115,7 @@ func (BECDesign) finish(p Problem, r *run) (Result, error) {
 		}
 		best = &candidate{rho: best.rho, degrees: best.degrees, value: min(1/o.t, 1), optimum: o}
 	}
-	result := Result{Ensemble: best.ensemble(), Threshold: threshold}
+	result := Result{Ensemble: best.ensemble(), Threshold: withMargin(threshold, best.ensemble(), p)}
 	free := best
 	if len(best.degrees) < len(p.VariableDegrees) {
 		var err error

@@ -1,6 +1,7 @@
 package optimize
 
 import (
+	"cmp"
 	"context"
 	"errors"
 	"math"
@@ -17,26 +18,96 @@ import (
 // is. A step is taken only if the best λ of the new ρ, found by the programme
 // that is not linearised, is better.
 const (
-	firstRadius = 0.1  // of the trust region, in any ρⱼ
-	lastRadius  = 1e-4 // below it, gains are of its square
+	firstRadius = 0.2  // of the trust region: edges that may change degree
+	lastRadius  = 1e-5 // below it, gains are of its square
 	// Each round tries steps of freeSteps radii, each shorter by freeShrink.
 	freeSteps  = 4
-	freeShrink = 4
-	freeRounds = 12
-	// freeGain is the relative gain in a round below which the search ends.
-	freeGain = 1e-9
-	// checkReach is how far beyond the present check degrees others are tried.
+	freeShrink = 3
+	freeRounds = 30
+	// freeGain is the relative gain in a round below which a start ends.
+	freeGain = 1e-8
+	// checkReach is how far beyond the present check degrees others are tried;
+	// further off, degrees in the ratio checkRatio, up to checkFar times the
+	// mean.
 	checkReach = 3
+	checkRatio = 1.05
+	checkFar   = 10
+	// Points within freeNear of binding count in a step, every freeStride'th of
+	// the grid.
+	freeNear   = 0.1
+	freeStride = 3
+	// A start away from the best is given up after freeTrial rounds unless its
+	// gap to the Shannon limit is within freePromise times the best.
+	freeTrial   = 4
+	freePromise = 1.02
 	// negligibleFraction of a check degree is dropped.
 	negligibleFraction = 1e-7
+	// awayEdges is the fraction of edges that the starts away from the best
+	// move to a check degree of awayRatios times the mean.
+	awayEdges = 0.1
 )
 
-// searchFree searches ρ from the candidate.
+var awayRatios = []float64{1.7, 3, 6}
+
+// searchFree searches ρ from the candidate, and, as the problem has several
+// local optima, from some ρ away from it.
 func searchFree(ctx context.Context, p Problem, r *run, d designer, c *candidate) error {
 	if len(p.CheckDegrees) == 1 {
 		r.report(doneFree)
 		return nil
 	}
+	starts := []*candidate{c}
+	var tasks []func() (*candidate, error)
+	for _, ratio := range awayRatios {
+		if rho := away(p, c.rho, ratio); rho != nil {
+			tasks = append(tasks, func() (*candidate, error) { return d.best(ctx, rho, c.degrees, c) })
+		}
+	}
+	found, stop, err := r.batch(ctx, tasks)
+	if stop || err != nil {
+		return err
+	}
+	for _, f := range found {
+		if f != nil {
+			starts = append(starts, f)
+		}
+	}
+	for i, start := range starts {
+		from := doneDist + (doneFree-doneDist)*float64(i)/float64(len(starts))
+		to := doneDist + (doneFree-doneDist)*float64(i+1)/float64(len(starts))
+		if stop, err := climb(ctx, p, r, d, start, from, to); stop || err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+// away returns ρ with awayEdges of the edges moved to an allowed degree near
+// the ratio times the mean, and the mean kept by a concentrated rest; nil if
+// that cannot be.
+func away(p Problem, rho ensembles.Distribution, ratio float64) ensembles.Distribution {
+	integral := rho.Integral()
+	far := int(math.Round(ratio / integral))
+	if n := len(p.CheckDegrees); n > 0 {
+		i, _ := slices.BinarySearch(p.CheckDegrees, far)
+		far = p.CheckDegrees[min(i, n-1)]
+	}
+	rest := (1 - awayEdges) / (integral - awayEdges/float64(far))
+	if rest < 2 || len(p.CheckDegrees) > 0 && rest < float64(p.CheckDegrees[0]) || float64(far) <= rest+1 {
+		return nil
+	}
+	var terms []ensembles.Term
+	for _, t := range p.rhoAt(rest) {
+		if t.Degree == far {
+			return nil
+		}
+		terms = append(terms, ensembles.Term{Degree: t.Degree, Fraction: t.Fraction * (1 - awayEdges)})
+	}
+	return ensembles.Normalize(append(terms, ensembles.Term{Degree: far, Fraction: awayEdges}))
+}
+
+// climb improves a candidate as long as steps gain.
+func climb(ctx context.Context, p Problem, r *run, d designer, c *candidate, from, to float64) (stop bool, err error) {
 	radius := firstRadius
 	for round := 0; round < freeRounds && radius >= lastRadius; round++ {
 		var tasks []func() (*candidate, error)
@@ -52,9 +123,9 @@ func searchFree(ctx context.Context, p Problem, r *run, d designer, c *candidate
 			radii = append(radii, step)
 		}
 		found, stop, err := r.batch(ctx, tasks)
-		r.report(doneDist + (doneFree-doneDist)*float64(round+1)/freeRounds)
+		r.report(from + (to-from)*float64(round+1)/freeRounds)
 		if stop || err != nil {
-			return err
+			return stop, err
 		}
 		old := c.value
 		next := radii[len(radii)-1] / freeShrink
@@ -62,7 +133,7 @@ func searchFree(ctx context.Context, p Problem, r *run, d designer, c *candidate
 			if f != nil && f.value > c.value && (r.distinct == 0 || len(f.lambda) <= r.distinct) {
 				c, next = f, radii[i]
 				if i == 0 {
-					next *= 2
+					next *= freeShrink
 				}
 			}
 		}
@@ -70,43 +141,59 @@ func searchFree(ctx context.Context, p Problem, r *run, d designer, c *candidate
 		if c.value > old && c.value < old*(1+freeGain) {
 			break
 		}
+		if round >= freeTrial && r.limit-c.value > freePromise*(r.limit-r.best.value) {
+			break
+		}
 	}
-	r.report(doneFree)
-	return nil
+	r.report(to)
+	return false, nil
 }
 
 // freeStep solves the linearised programme and returns its ρ.
 func freeStep(p Problem, d *design, c *candidate, radius float64) (ensembles.Distribution, error) {
-	checks := freeChecks(p, c.rho)
+	checks := freeChecks(p, d, c)
 	degrees := freeDegrees(d.degrees, c.working.degrees)
 	old := make([]float64, len(checks))
-	low := make([]float64, len(checks))
+	var down []int // the check degrees in use, as indices of checks
 	program := linprog.Program{Goal: linprog.Minimize}
 	program.AddColumn(1)
 	for range degrees {
 		program.AddColumn(0)
 	}
 	for k, j := range checks {
-		old[k] = c.rho.Fraction(j)
-		low[k] = max(0, old[k]-radius)
+		if old[k] = c.rho.Fraction(j); old[k] > 0 {
+			down = append(down, k)
+		}
+		program.AddColumn(0)
+	}
+	for _, k := range down {
 		column, err := program.AddColumn(0)
 		if err != nil {
 			return nil, err
 		}
-		program.SetUpper(column, min(1, old[k]+radius)-low[k])
+		program.SetUpper(column, old[k])
 	}
-	// row adds Σ aᵢλᵢ + Σ bⱼρⱼ - t·[withT] rel rhs, ρⱼ being low plus a column.
-	row := func(relation linprog.Relation, rhs float64, t float64, a, b func(k int) float64) {
-		entries := []float64{t}
+	// row adds Σ aᵢλᵢ + Σ bⱼρⱼ + e·t rel rhs, where ρⱼ is its old value plus a
+	// column and, for degrees in use, less another.
+	row := func(relation linprog.Relation, rhs float64, e float64, a, b func(k int) float64) {
+		entries := []float64{e}
 		for k := range degrees {
 			entries = append(entries, a(k))
 		}
 		for k := range checks {
 			entries = append(entries, b(k))
-			rhs -= b(k) * low[k]
+		}
+		for _, k := range down {
+			entries = append(entries, -b(k))
+			rhs -= b(k) * old[k]
 		}
 		program.AddRow(relation, rhs, entries...)
 	}
+	region := make([]float64, program.Columns())
+	for k := range checks {
+		region[1+len(degrees)+k] = 1
+	}
+	program.AddRow(linprog.AtMost, radius, region...)
 	zero := func(int) float64 { return 0 }
 	one := func(int) float64 { return 1 }
 	row(linprog.Equal, 1, 0, one, zero)
@@ -133,13 +220,7 @@ func freeStep(p Problem, d *design, c *candidate, radius float64) (ensembles.Dis
 			row(linprog.AtMost, limit.bound+dot(old, slope), 0, isTwo, slope)
 		}
 	}
-	points := slices.Clone(c.points)
-	for k, point := range d.grid() {
-		if k%2 == 0 {
-			points = append(points, point)
-		}
-	}
-	for _, point := range points {
+	for _, point := range freePoints(d, c) {
 		slopes := d.byCheck(point, c.lambda, checks)
 		slope := func(k int) float64 { return slopes[k] }
 		row(linprog.AtMost, dot(old, slope), -1, func(k int) float64 { return d.at(point, degrees[k]) }, slope)
@@ -151,13 +232,39 @@ func freeStep(p Problem, d *design, c *candidate, radius float64) (ensembles.Dis
 	if s.Status != linprog.Optimal {
 		return nil, ErrUnreachable
 	}
+	rho := slices.Clone(old)
+	for k := range checks {
+		rho[k] += s.X[1+len(degrees)+k]
+	}
+	for e, k := range down {
+		rho[k] -= s.X[1+len(degrees)+len(checks)+e]
+	}
 	var terms []ensembles.Term
 	for k, j := range checks {
-		if f := low[k] + s.X[1+len(degrees)+k]; f > negligibleFraction {
-			terms = append(terms, ensembles.Term{Degree: j, Fraction: f})
+		if rho[k] > negligibleFraction {
+			terms = append(terms, ensembles.Term{Degree: j, Fraction: rho[k]})
 		}
 	}
 	return ensembles.Normalize(terms), nil
+}
+
+// freePoints returns the points that bind, and of the grid those where the
+// constraint is within freeNear of t: others do not come to bind in a step.
+func freePoints(d *design, c *candidate) []float64 {
+	points := slices.Clone(c.points)
+	grid := d.grid()
+	height := make([]float64, len(grid))
+	for _, t := range c.lambda {
+		for k, v := range d.column(t.Degree) {
+			height[k] += t.Fraction * v
+		}
+	}
+	for k := 0; k < len(grid); k += freeStride {
+		if height[k] > c.t*(1-freeNear) {
+			points = append(points, grid[k])
+		}
+	}
+	return points
 }
 
 func dot(v []float64, f func(k int) float64) float64 {
@@ -169,35 +276,33 @@ func dot(v []float64, f func(k int) float64) float64 {
 }
 
 // freeChecks returns the check degrees to try: all that are allowed if they
-// are few, otherwise those near the present ones and some further off.
-func freeChecks(p Problem, rho ensembles.Distribution) []int {
-	if c := p.CheckDegrees; len(c) > 0 && len(c) <= 4*checkReach {
-		return c
+// are few, otherwise those in use, those near them, and of all others up to
+// checkFar times the largest those that price out best by the gradient.
+func freeChecks(p Problem, d *design, c *candidate) []int {
+	allowed := p.CheckDegrees
+	if len(allowed) > 0 && len(allowed) <= 4*checkReach {
+		return allowed
 	}
-	low, high := rho.Min(), rho.Max()
-	var checks []int
-	add := func(j int) {
-		if j < 2 || j > ensembles.MaxDegree {
-			return
+	if len(allowed) == 0 {
+		for j := 2.; j <= checkFar/c.rho.Integral() && j <= ensembles.MaxDegree; j = math.Floor(max(j+1, j*checkRatio)) {
+			allowed = append(allowed, int(j))
 		}
-		if c := p.CheckDegrees; len(c) > 0 {
-			if _, found := slices.BinarySearch(c, j); !found {
-				return
-			}
+	}
+	low, high := c.rho.Min(), c.rho.Max()
+	checks := degreesOf(c.rho)
+	for j := max(low-checkReach, 2); j <= high+checkReach; j++ {
+		if _, found := slices.BinarySearch(p.CheckDegrees, j); (found || len(p.CheckDegrees) == 0) && (j <= low || j >= high) {
+			checks = append(checks, j)
 		}
-		checks = append(checks, j)
 	}
-	for _, t := range rho {
-		add(t.Degree)
+	gradient := checkGradient(d, c, p.Rate, allowed)
+	byGradient := make([]int, len(allowed))
+	for k := range byGradient {
+		byGradient[k] = k
 	}
-	for j := max(low-checkReach, 2); j <= low; j++ {
-		add(j)
-	}
-	for j := high; j <= high+checkReach; j++ {
-		add(j)
-	}
-	for _, f := range []float64{0.5, 0.7, 1.4, 2} {
-		add(int(math.Round(f * float64(low+high) / 2)))
+	slices.SortStableFunc(byGradient, func(a, b int) int { return cmp.Compare(gradient[a], gradient[b]) })
+	for _, k := range byGradient[:min(len(byGradient), 2*checkReach)] {
+		checks = append(checks, allowed[k])
 	}
 	slices.Sort(checks)
 	return slices.Compact(checks)

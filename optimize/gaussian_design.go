@@ -44,6 +44,7 @@ func (GaussianDesign) finish(p Problem, r *run) (Result, error) {
 	if err != nil {
 		return Result{}, err
 	}
+	threshold = withMargin(threshold, best.ensemble(), p)
 	if threshold.Value > r.limit {
 		threshold.Warnings = append(threshold.Warnings, "above the Shannon limit: the Gaussian approximation does not hold for this ensemble")
 	}
