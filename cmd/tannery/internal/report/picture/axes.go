@@ -6,6 +6,8 @@ import (
 	"strconv"
 
 	"gonum.org/v1/plot"
+	"gonum.org/v1/plot/text"
+	"gonum.org/v1/plot/vg"
 	"gonum.org/v1/plot/vg/draw"
 )
 
@@ -84,6 +86,20 @@ func powerLabel(digit, exponent int) string {
 	return fmt.Sprintf("%de%d", digit, exponent)
 }
 
+// drawPlot draws a plot with the label of its axis upwards, in the middle of
+// the axis. The library would centre it by its values, which leaves a gap
+// above logarithmic axes. It returns where the data are.
+func drawPlot(c draw.Canvas, p *plot.Plot, label string) (data draw.Canvas) {
+	style := sized(regular, textSize+0.5, ink)
+	style.XAlign, style.YAlign, style.Rotation = text.XCenter, text.YTop, math.Pi/2
+	room := style.FontExtents().Height + 4
+	inner := draw.Crop(c, room, 0, 0, 0)
+	data = p.DataCanvas(inner)
+	c.FillText(style, vg.Point{X: c.Min.X, Y: data.Center().Y}, label)
+	p.Draw(inner)
+	return data
+}
+
 // grid draws faint lines at the labelled ticks, behind everything else.
 type grid struct{}
 
@@ -92,7 +108,7 @@ func (grid) Plot(c draw.Canvas, p *plot.Plot) {
 	x, y := p.Transforms(&c)
 	line := stroke(rule, 0.5)
 	for _, t := range p.X.Tick.Marker.Ticks(p.X.Min, p.X.Max) {
-		if at := x(t.Value); !t.IsMinor() && c.ContainsX(at) {
+		if at := x(t.Value); !t.IsMinor() && p.X.Tick.Width > 0 && c.ContainsX(at) {
 			c.StrokeLine2(line, at, c.Min.Y, at, c.Max.Y)
 		}
 	}

@@ -55,7 +55,7 @@ var limitStyles = []draw.LineStyle{
 
 // Picture draws the curves.
 func (k Curves) Picture() Picture {
-	p := newPlot(k.Axis, "error rate")
+	p := newPlot(k.Axis)
 	p.Y.Scale, p.Y.Tick.Marker = plot.LogScale{}, decades{}
 	var x, y span
 	for _, s := range k.Series {
@@ -109,7 +109,7 @@ func (k Curves) Picture() Picture {
 	return Picture{
 		title: "Measured error rates beside the limits", subject: k.Subject, alt: alt, legend: legend,
 		width: defaultWidth, height: 430,
-		contents: func(c draw.Canvas) { p.Draw(c) },
+		contents: func(c draw.Canvas) { drawPlot(c, p, "error rate") },
 	}
 }
 

@@ -26,7 +26,7 @@ type DegreeShare struct {
 
 // Picture draws bars for variable nodes, and beside them for check nodes.
 func (d Degrees) Picture() Picture {
-	variable, check := bars(d.Variable, "variable node degree", "fraction"), bars(d.Check, "check node degree", "")
+	variable, check := bars(d.Variable, "variable node degree"), bars(d.Check, "check node degree")
 	top := math.Max(variable.Y.Max, check.Y.Max)
 	variable.Y.Max, check.Y.Max = top, top
 	return Picture{
@@ -40,8 +40,11 @@ func (d Degrees) Picture() Picture {
 			share := float64(len(d.Variable)) / float64(len(d.Variable)+len(d.Check))
 			share = math.Min(0.75, math.Max(0.45, share))
 			split := c.Size().X * vg.Length(share)
-			variable.Draw(draw.Crop(c, 0, split-c.Size().X-8, 0, 0))
-			check.Draw(draw.Crop(c, split+8, 0, 0, 0))
+			left, right := draw.Crop(c, 0, split-c.Size().X-8, 0, 0), draw.Crop(c, split+8, 0, 0, 0)
+			variable.X.Tick.Marker = named{d.Variable, left.Size().X - 40}
+			check.X.Tick.Marker = named{d.Check, right.Size().X - 25}
+			drawPlot(left, variable, "fraction")
+			check.Draw(right)
 		},
 	}
 }
@@ -59,11 +62,12 @@ func largest(kind string, shares []DegreeShare) string {
 
 // bars returns a panel, one pair of bars for each degree at equal distances:
 // degrees that are far apart need no room between them.
-func bars(shares []DegreeShare, x, y string) *plot.Plot {
-	p := newPlot(x, y)
+func bars(shares []DegreeShare, x string) *plot.Plot {
+	p := newPlot(x)
 	p.X.Min, p.X.Max = -0.6, float64(len(shares))-0.4
-	p.X.Tick.Marker = named(shares)
-	p.X.Tick.Length = 0
+	p.X.Tick.Marker = named{shares, defaultWidth}
+	p.X.Tick.Width = 0 // no lines: the bars stand on their names
+	p.X.Label.Padding = 6
 	p.Y.Min = 0
 	highest := 0.
 	for i, s := range shares {
@@ -79,22 +83,24 @@ func bar(left, right, height float64, fill color.Color) plot.Plotter {
 	return area([]point{{left, 0}, {right, 0}, {right, height}, {left, height}}, fill)
 }
 
-// maxNames is how many degrees can be written under an axis of its width.
-const maxNames = 16
-
-// named marks the bars with their degrees; with many bars only some of them.
-type named []DegreeShare
+// named marks the bars with their degrees; where there are more bars than
+// names fit into the width, only some of them.
+type named struct {
+	shares []DegreeShare
+	width  vg.Length
+}
 
 // Ticks implements plot.Ticker.
 func (n named) Ticks(_, _ float64) []plot.Tick {
-	every := (len(n) + maxNames - 1) / maxNames
+	last := len(n.shares) - 1
+	widest := sized(regular, tickSize, ink).Width(strconv.Itoa(n.shares[last].Degree)) + 6
+	every := max(1, int(math.Ceil(float64(len(n.shares))*float64(widest/n.width))))
 	var ticks []plot.Tick
-	for i, s := range n {
-		label := strconv.Itoa(s.Degree)
-		if i%every != 0 && (i != len(n)-1 || i%every < every/2+1) {
-			continue
+	for i, s := range n.shares {
+		// The last one is named rather than its neighbour.
+		if i == last || i%every == 0 && last-i >= every {
+			ticks = append(ticks, plot.Tick{Value: float64(i), Label: strconv.Itoa(s.Degree)})
 		}
-		ticks = append(ticks, plot.Tick{Value: float64(i), Label: label})
 	}
 	return ticks
 }

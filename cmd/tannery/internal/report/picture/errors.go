@@ -32,9 +32,8 @@ const leastDrawn = 1e-15
 func (e Errors) Picture() Picture {
 	messageLine, bitLine := stroke(deep, 1.5), stroke(rust, 1.5, 5, 2.5)
 	legend := []key{{text: "messages from variable nodes", line: &messageLine}, {text: "decided bits", line: &bitLine}}
-	p := newPlot("iterations", "error probability")
+	p := newPlot("iterations")
 	last := e.States[len(e.States)-1]
-	p.X.Min, p.X.Max = 0, float64(max(1, last.Iteration))
 	p.Y.Scale, p.Y.Tick.Marker = plot.LogScale{}, decades{}
 	low, high := math.Inf(1), 0.
 	for _, s := range e.States {
@@ -52,6 +51,12 @@ func (e Errors) Picture() Picture {
 	if p.Y.Min >= p.Y.Max {
 		p.Y.Max = 10 * p.Y.Min
 	}
+	messages := e.curve(p.Y.Min, func(s ErrorState) float64 { return s.Message })
+	bits := e.curve(p.Y.Min, func(s ErrorState) float64 { return s.Bit })
+	p.X.Min, p.X.Max = 0, 1
+	for _, q := range append(append([]point{}, messages...), bits...) {
+		p.X.Max = math.Max(p.X.Max, math.Ceil(q.x))
+	}
 	if p.X.Max < 12 {
 		p.X.Tick.Marker = whole{}
 	}
@@ -64,12 +69,11 @@ func (e Errors) Picture() Picture {
 		alt += "; " + words
 		p.Add(polyline([]point{{float64(s.Iteration), p.Y.Min}, {float64(s.Iteration), p.Y.Max}}, line))
 	}
-	p.Add(polyline(e.curve(p.Y.Min, func(s ErrorState) float64 { return s.Bit }), bitLine))
-	p.Add(polyline(e.curve(p.Y.Min, func(s ErrorState) float64 { return s.Message }), messageLine))
+	p.Add(polyline(bits, bitLine), polyline(messages, messageLine))
 	return Picture{
 		title: "Error probability against iterations", subject: e.Subject, alt: alt, legend: legend,
 		width: defaultWidth, height: 340,
-		contents: func(c draw.Canvas) { p.Draw(c) },
+		contents: func(c draw.Canvas) { drawPlot(c, p, "error probability") },
 	}
 }
 

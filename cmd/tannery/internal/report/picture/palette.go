@@ -52,8 +52,8 @@ var roles = []struct {
 	{"--muted", muted, "#9AA5AE"},
 	{"--rule", rule, "#2E363D"},
 	{"--deep", deep, "#8FB9E6"},
-	{"--rust", rust, "#E08A55"},
-	{"--reed", reed, "#5E8A73"},
+	{"--rust", rust, "#CC7440"},
+	{"--reed", reed, "#456857"},
 	{"--fog", fog, "#1C2420"},
 }
 
@@ -110,8 +110,9 @@ func stroke(c color.Color, width float64, dashes ...vg.Length) draw.LineStyle {
 	return draw.LineStyle{Color: c, Width: vg.Length(width), Dashes: dashes}
 }
 
-// newPlot returns a plot in the style of the house, ranges to be set.
-func newPlot(x, y string) *plot.Plot {
+// newPlot returns a plot in the style of the house, ranges to be set. The
+// label of the axis upwards is drawn by drawPlot.
+func newPlot(x string) *plot.Plot {
 	p := plot.New()
 	p.BackgroundColor = nil
 	p.TextHandler = handler
@@ -125,7 +126,7 @@ func newPlot(x, y string) *plot.Plot {
 		a.Tick.Length = 4
 		a.Tick.Marker = linear{}
 	}
-	p.X.Label.Text, p.Y.Label.Text = x, y
+	p.X.Label.Text = x
 	p.Add(grid{})
 	return p
 }

@@ -75,7 +75,7 @@ func (p Picture) Inline() (string, error) {
 	if _, err := c.WriteTo(&b); err != nil {
 		return "", err
 	}
-	svg := sizes.ReplaceAllString(string(p.accessible(b.Bytes(), "")), "<svg$2")
+	svg := sizes.ReplaceAllString(string(p.accessible(b.Bytes(), "")), "<svg$1")
 	return variables(svg), nil
 }
 

@@ -2,7 +2,6 @@ package picture
 
 import (
 	"fmt"
-	"math"
 	"strconv"
 
 	"gonum.org/v1/plot"
@@ -44,9 +43,14 @@ func (t Tunnel) Picture() Picture {
 		{text: "check nodes", line: &checkLine},
 		{text: "trajectory", line: &stairLine},
 	}
-	p := newPlot("entropy of messages from variable nodes, bit", "entropy of messages from check nodes, bit")
+	p := newPlot("entropy of messages from variable nodes, bit")
 	p.X.Min, p.X.Max = 0, 1.04*t.States[0].Variable
-	p.Y.Min, p.Y.Max = 0, math.Min(1.02, 1.06*t.States[0].Check)
+	p.Y.Min, p.Y.Max = 0, tunnelTop(t.States[0].Check)
+	if end := t.States[len(t.States)-1]; t.Stalled {
+		// Nothing happens below the fixed point.
+		p.X.Min = max(0, end.Variable-(t.States[0].Variable-end.Variable)/3)
+		p.Y.Min = max(0, end.Check-(t.States[0].Check-end.Check)/3)
+	}
 	walls := func(p *plot.Plot) {
 		p.Add(area(append(append([]point{}, variable...), reversed(check)...), fog))
 		p.Add(polyline(stairs, stairLine), polyline(variable, variableLine), polyline(check, checkLine))
@@ -70,13 +74,20 @@ func (t Tunnel) Picture() Picture {
 		title: "Decoding tunnel", subject: t.Subject, alt: alt, legend: legend,
 		width: defaultWidth, height: 430,
 		contents: func(c draw.Canvas) {
-			p.Draw(c)
+			data := drawPlot(c, p, "entropy of messages from check nodes, bit")
 			if inset != nil {
-				data := p.DataCanvas(c)
 				drawInset(data, inset)
 			}
 		},
 	}
+}
+
+// tunnelTop is the end of the axis upwards: 1, if the curves come near.
+func tunnelTop(highest float64) float64 {
+	if highest > 0.8 {
+		return 1.02
+	}
+	return 1.06 * highest
 }
 
 // curves returns the two walls, each from the channel to the end.
@@ -137,14 +148,14 @@ const (
 func (t Tunnel) inset(place int) *plot.Plot {
 	from, to := max(0, place-insetSteps/2), min(len(t.States)-1, place+insetSteps/2)
 	if t.Stalled {
-		from, to = max(0, place-insetSteps), place
+		return nil // the walls meet in a point, at any magnification
 	}
 	a, b := t.States[from], t.States[to]
 	step := (a.Variable - b.Variable) / float64(to-from)
 	if to-from < 3 || step > insetBelow*t.States[0].Variable || !(a.Variable > b.Variable) || !(a.Check > b.Check) {
 		return nil
 	}
-	p := newPlot("", "")
+	p := newPlot("")
 	dx, dy := 0.1*(a.Variable-b.Variable), 0.1*(a.Check-b.Check)
 	p.X.Min, p.X.Max, p.Y.Min, p.Y.Max = b.Variable-dx, a.Variable+dx, b.Check-dy, a.Check+dy
 	p.X.Tick.Marker, p.Y.Tick.Marker = ends{}, ends{}
