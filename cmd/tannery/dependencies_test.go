@@ -14,6 +14,7 @@ func TestDependencies(t *testing.T) {
 		"github.com/schollz/progressbar/v3",
 		"github.com/spf13/cobra",
 		"github.com/spf13/pflag", // part of cobra's interface
+		"golang.org/x/image",     // part of plot's interface
 		"gonum.org/v1/gonum",
 		"gonum.org/v1/plot",
 		"gopkg.in/yaml.v3",

@@ -10,8 +10,8 @@ import (
 	"tannery/ensembles"
 )
 
-// profileOptions are the ways to give a profile: a file, standard input, or
-// its two distributions as text.
+// profileOptions are the ways to give a profile: a file, standard input, a name
+// of the catalogue, or its two distributions as text.
 type profileOptions struct {
 	lambda, rho distributionOption
 }
@@ -28,7 +28,7 @@ func (o *profileOptions) read(cmd *cobra.Command, args []string) (ensembles.Prof
 	lambda, rho := cmd.Flags().Changed("lambda"), cmd.Flags().Changed("rho")
 	switch {
 	case len(args) == 0 && !lambda && !rho:
-		return none, nil, usagef("profile: missing; allowed: a file, - for standard input, or --lambda and --rho")
+		return none, nil, usagef("profile: missing; allowed: a file, - for standard input, a name of the catalogue, or --lambda and --rho")
 	case len(args) > 0 && (lambda || rho):
 		return none, nil, usagef("%s: a profile from a file beside --lambda or --rho; allowed: one of the two", args[0])
 	case lambda != rho:
@@ -40,12 +40,7 @@ func (o *profileOptions) read(cmd *cobra.Command, args []string) (ensembles.Prof
 		}
 		return ensembles.Profile{Ensemble: e}, nil, nil
 	}
-	content, name, err := readInput(cmd.Context(), args[0], cmd.InOrStdin())
-	if err != nil {
-		return none, nil, err
-	}
-	p, warnings, err := ensembles.DecodeProfile(name, content)
-	return p, warnings, invalid(err)
+	return loadProfile(cmd, args[0])
 }
 
 // channelOf returns the name of the channel to use for a profile if none was

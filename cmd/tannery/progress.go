@@ -94,6 +94,14 @@ func (p *progress) update(phase string, done float64, best string) {
 	}
 }
 
+// ending tells a person who has interrupted the search that it was heard: the
+// evaluation under way may take some seconds more.
+func (p *progress) ending() {
+	if p != nil && p.bar != nil {
+		fmt.Fprint(p.w, "\r\x1b[Ktannery: ending with the best found; interrupt again to end at once\n")
+	}
+}
+
 // finish removes the bar, so that what follows stands on a clean line.
 func (p *progress) finish() {
 	if p != nil && p.bar != nil {

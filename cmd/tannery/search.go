@@ -75,6 +75,7 @@ func runSearch(cmd *cobra.Command, args []string, o *searchOptions) error {
 	}
 	start := time.Now()
 	shown := newProgress(cmd.ErrOrStderr(), o.noProgress || quiet(cmd))
+	defer context.AfterFunc(cmd.Context(), shown.ending)()
 	result, err := optimize.Search(cmd.Context(), problemOf(b, family), optimize.Settings{
 		Method:   method,
 		Seed:     b.Seed,
@@ -185,7 +186,7 @@ var _ optimize.Recorder = (*searchProgress)(nil)
 func (s *searchProgress) Progress(p optimize.Progress) {
 	best := ""
 	if p.Threshold > 0 {
-		best = fmt.Sprintf("best gap %.5f in %s", p.Gap, s.family.Symbol())
+		best = fmt.Sprintf("best gap %s in %s", report.Significant(p.Gap, 3), s.family.Symbol())
 		if db := decibels(s.family, p.Threshold, p.Threshold+p.Gap); db != nil {
 			best = fmt.Sprintf("best gap %.4f dB", *db)
 		}

@@ -18,7 +18,11 @@ type Degrees ensembles.Distribution
 func (d Degrees) String() string {
 	items := make([]string, len(d))
 	for i, t := range d {
-		items[i] = strconv.Itoa(t.Degree) + ":" + Trimmed(t.Fraction, 6)
+		fraction := Trimmed(t.Fraction, 6)
+		if t.Fraction < 1e-5 {
+			fraction = strconv.FormatFloat(t.Fraction, 'e', 1, 64)
+		}
+		items[i] = strconv.Itoa(t.Degree) + ":" + fraction
 	}
 	return strings.Join(items, " ")
 }

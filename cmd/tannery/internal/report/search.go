@@ -72,7 +72,11 @@ func (r *Search) WriteText(w io.Writer) error {
 		t.Row("link", "%s at its %s = %s, margin %s", verdict, symbol, short(l.Parameter), margin)
 	}
 	t.Heading("Search")
-	t.Row("ended", "%s after %d evaluations, %s s", r.Status, r.Evaluations, Fixed(r.Seconds, 1))
+	evaluations := "evaluations"
+	if r.Evaluations == 1 {
+		evaluations = "evaluation"
+	}
+	t.Row("ended", "%s after %d %s, %s s", r.Status, r.Evaluations, evaluations, Fixed(r.Seconds, 1))
 	if c := r.Certificate; c != nil {
 		t.Row("certificate", "no λ with these degrees and this ρ does better than %s = %s by more than %s",
 			symbol, Fixed(r.Threshold.Threshold, maxDecimals), atMost(c.Above))
