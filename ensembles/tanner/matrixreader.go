@@ -1,0 +1,240 @@
+package tanner
+
+import (
+	"bufio"
+	"bytes"
+	"errors"
+	"fmt"
+	"io"
+	"slices"
+	"strings"
+)
+
+// maxLine is the longest line kept; the format allows 1024 characters.
+// Longer comments are skipped, other lines are refused.
+const maxLine = 1 << 16
+
+// ReadMatrix reads a Matrix Market coordinate pattern as a parity-check
+// matrix: rows are check nodes and columns variable nodes. Comments and blank
+// lines may stand anywhere after the first line, and lines may end with CR
+// LF. Every row and every column must have an entry and no entry may be
+// repeated. Errors begin with the number of the line at fault. Memory grows
+// with what has been read, never with what the size line promises.
+func ReadMatrix(r io.Reader) (*Graph, Label, error) {
+	m := matrixReader{lines: bufio.NewReaderSize(r, maxLine)}
+	if err := m.read(); err != nil {
+		if m.line > 0 {
+			err = fmt.Errorf("line %d: %w", m.line, err)
+		}
+		return nil, Label{}, err
+	}
+	return m.graph, m.label, nil
+}
+
+type matrixReader struct {
+	lines                  *bufio.Reader
+	line                   int // number of the line in hand, 0 if none is at fault
+	rows, columns, entries int
+	edges                  []Edge
+	offsets                []lineOffset
+	graph                  *Graph
+	label                  Label
+}
+
+// lineOffset says that from an entry on, the line of entry i is i + lines.
+type lineOffset struct{ entry, lines int }
+
+func (m *matrixReader) read() error {
+	text, err := m.next()
+	if err != nil {
+		return m.ended(err, "it must begin with "+banner)
+	}
+	if !slices.Equal(strings.Fields(strings.ToLower(string(text))), strings.Fields(strings.ToLower(banner))) {
+		return fmt.Errorf("%q: must be %s", shorten(text), banner)
+	}
+	if text, err = m.nextData(); err != nil {
+		return m.ended(err, "the line of rows, columns and entries is missing")
+	}
+	if err := m.readSize(text); err != nil {
+		return err
+	}
+	for len(m.edges) < m.entries {
+		if text, err = m.nextData(); err != nil {
+			return m.ended(err, fmt.Sprintf("there are %d entries of the %d announced", len(m.edges), m.entries))
+		}
+		if err := m.readEntry(text); err != nil {
+			return err
+		}
+	}
+	if text, err = m.nextData(); err == nil {
+		return fmt.Errorf("%q: more than the %d entries announced", shorten(text), m.entries)
+	} else if err != io.EOF {
+		return err
+	}
+	return m.assemble()
+}
+
+// ended explains an end of the file that comes too early.
+func (m *matrixReader) ended(err error, why string) error {
+	if err == io.EOF {
+		m.line = max(m.line, 1)
+		return errors.New("the file ends here: " + why)
+	}
+	return err
+}
+
+// next returns the next line without its end; the slice is valid until the
+// next call. Of a longer line than maxLine it returns the beginning if it is
+// a comment, and an error otherwise.
+func (m *matrixReader) next() ([]byte, error) {
+	text, err := m.lines.ReadSlice('\n')
+	if len(text) == 0 && err == io.EOF {
+		return nil, io.EOF
+	}
+	m.line++
+	if err == bufio.ErrBufferFull {
+		if text[0] != '%' || m.line == 1 {
+			return nil, fmt.Errorf("%q: a line of more than %d bytes", shorten(text), maxLine)
+		}
+		text = []byte("%")
+		for err == bufio.ErrBufferFull {
+			_, err = m.lines.ReadSlice('\n')
+		}
+	}
+	if err != nil && err != io.EOF {
+		return nil, err
+	}
+	return bytes.TrimSuffix(bytes.TrimSuffix(text, []byte("\n")), []byte("\r")), nil
+}
+
+// nextData returns the next line that is neither blank nor a comment.
+func (m *matrixReader) nextData() ([]byte, error) {
+	for {
+		text, err := m.next()
+		if err != nil {
+			return nil, err
+		}
+		switch {
+		case len(text) > 0 && text[0] == '%':
+			m.readComment(text[1:])
+		case len(bytes.TrimSpace(text)) > 0:
+			return text, nil
+		}
+	}
+}
+
+// readComment keeps the parts of a label, the first of each key.
+func (m *matrixReader) readComment(text []byte) {
+	key, value, _ := strings.Cut(string(text), ":")
+	for _, p := range m.label.parts() {
+		if strings.TrimSpace(key) == p.key && *p.value == "" {
+			*p.value = strings.Join(strings.Fields(value), " ")
+		}
+	}
+}
+
+func (m *matrixReader) readSize(text []byte) error {
+	var size [3]int
+	if err := parseNumbers(text, size[:], "ROWS COLUMNS ENTRIES"); err != nil {
+		return err
+	}
+	m.rows, m.columns, m.entries = size[0], size[1], size[2]
+	switch {
+	case m.rows == 0 || m.columns == 0:
+		return fmt.Errorf("%d rows and %d columns: must be at least 1", m.rows, m.columns)
+	case m.entries > MaxEdges:
+		return fmt.Errorf("%d entries: must be at most %d", m.entries, MaxEdges)
+	case m.rows > m.entries:
+		return fmt.Errorf("%d rows and %d entries: every row must have an entry", m.rows, m.entries)
+	case m.columns > m.entries:
+		return fmt.Errorf("%d columns and %d entries: every column must have an entry", m.columns, m.entries)
+	}
+	return nil
+}
+
+func (m *matrixReader) readEntry(text []byte) error {
+	var at [2]int
+	if err := parseNumbers(text, at[:], "ROW COLUMN"); err != nil {
+		return err
+	}
+	if at[0] < 1 || at[0] > m.rows {
+		return fmt.Errorf("row %d: must be from 1 to %d", at[0], m.rows)
+	}
+	if at[1] < 1 || at[1] > m.columns {
+		return fmt.Errorf("column %d: must be from 1 to %d", at[1], m.columns)
+	}
+	lines := m.line - len(m.edges)
+	if last := len(m.offsets) - 1; last < 0 || m.offsets[last].lines != lines {
+		m.offsets = append(m.offsets, lineOffset{len(m.edges), lines})
+	}
+	m.edges = append(m.edges, Edge{int32(at[1] - 1), int32(at[0] - 1)})
+	return nil
+}
+
+// parseNumbers reads exactly as many whole numbers as the list has, written
+// in decimal digits and separated by spaces or tabs.
+func parseNumbers(text []byte, list []int, form string) error {
+	rest := text
+	for i := range list {
+		rest = bytes.TrimLeft(rest, " \t")
+		digits := 0
+		n := 0
+		for digits < len(rest) && rest[digits] >= '0' && rest[digits] <= '9' {
+			if n > MaxEdges {
+				return fmt.Errorf("%q: numbers must be at most %d", shorten(text), MaxEdges)
+			}
+			n = 10*n + int(rest[digits]-'0')
+			digits++
+		}
+		if digits == 0 || digits < len(rest) && rest[digits] != ' ' && rest[digits] != '\t' {
+			return fmt.Errorf("%q: must be %s in whole numbers", shorten(text), form)
+		}
+		list[i] = n
+		rest = rest[digits:]
+	}
+	if len(bytes.TrimSpace(rest)) > 0 {
+		return fmt.Errorf("%q: must be %s and nothing else", shorten(text), form)
+	}
+	return nil
+}
+
+// shorten makes a line fit into a message.
+func shorten(text []byte) string {
+	if text = bytes.TrimSpace(text); len(text) > 60 {
+		return string(text[:60]) + "…"
+	}
+	return string(text)
+}
+
+// assemble makes the graph and checks what can be seen only as a whole.
+func (m *matrixReader) assemble() error {
+	g := assemble(m.columns, m.rows, m.edges)
+	if v, c, found := g.repeated(); found {
+		first := slices.Index(m.edges, Edge{v, c})
+		second := first + 1 + slices.Index(m.edges[first+1:], Edge{v, c})
+		m.line = m.lineOf(second)
+		return fmt.Errorf("row %d, column %d: repeats the entry of line %d", c+1, v+1, m.lineOf(first))
+	}
+	m.line = 0
+	for c := range g.Checks() {
+		if len(g.VariablesOf(c)) == 0 {
+			return fmt.Errorf("row %d of %d: must have an entry", c+1, m.rows)
+		}
+	}
+	for v := range g.Variables() {
+		if len(g.ChecksOf(v)) == 0 {
+			return fmt.Errorf("column %d of %d: must have an entry", v+1, m.columns)
+		}
+	}
+	m.graph = g
+	return nil
+}
+
+// lineOf returns the line that entry i was read from.
+func (m *matrixReader) lineOf(i int) int {
+	k, found := slices.BinarySearchFunc(m.offsets, i, func(o lineOffset, i int) int { return o.entry - i })
+	if !found {
+		k--
+	}
+	return i + m.offsets[k].lines
+}
