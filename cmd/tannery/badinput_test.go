@@ -43,7 +43,7 @@ func TestBadInput(t *testing.T) {
 		{"no file", "threshold none.yaml --channel bec", "",
 			"none.yaml: cannot be read: no such file or directory"},
 		{"no name", "threshold rsu01-r50-d16 --channel bec", "",
-			"rsu01-r50-d16: neither a file nor a name of the catalogue; nearest: rsu01-r50-d4, rsu01-r50-d5, rsu01-r50-d6; tannery catalog lists them"},
+			"rsu01-r50-d16: neither a file nor a name of the catalogue; nearest: rsu01-r50-d10, rsu01-r50-d11, rsu01-r50-d12, rsu01-r50-d15; tannery catalog lists them"},
 		{"nothing like a name", "threshold harbour --channel bec", "",
 			"harbour: neither a file nor a name of the catalogue; tannery catalog lists them"},
 		{"a folder", "threshold . --channel bec", "",

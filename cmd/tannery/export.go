@@ -45,7 +45,7 @@ not at all, and a report to standard output. Thresholds in it are those of the
 integer profile: one for each channel and method among the profile's results, or
 for the channel asked for.`,
 		Args:              atMost(1, "one profile"),
-		ValidArgsFunction: profileFiles,
+		ValidArgsFunction: profileArguments(1),
 		RunE:              func(cmd *cobra.Command, args []string) error { return runExport(cmd, args, o) },
 	}
 	o.addChannel(cmd, "channel for the threshold; by default those that the profile's results name")

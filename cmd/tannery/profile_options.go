@@ -72,7 +72,7 @@ func printWarning(w io.Writer, text string) {
 	fmt.Fprintf(w, "tannery: warning: %s\n", text)
 }
 
-// profileFiles completes the argument of a command that takes one profile.
+// profileFiles completes the argument of a command that takes one brief.
 func profileFiles(_ *cobra.Command, args []string, _ string) ([]string, cobra.ShellCompDirective) {
 	if len(args) > 0 {
 		return nil, cobra.ShellCompDirectiveNoFileComp

@@ -1,6 +1,7 @@
 package main
 
 import (
+	"cmp"
 	"errors"
 	"fmt"
 	"io/fs"
@@ -56,7 +57,7 @@ func profileName(args []string) string {
 
 // How many names are suggested, and how many letters they may differ by.
 const (
-	maxSuggested     = 3
+	maxSuggested     = 4
 	maxNameDistance  = 4
 	leastTypedToList = 2
 )
@@ -65,8 +66,8 @@ const (
 // with the text or are nearest to it.
 func nearestNames(text string) string {
 	type candidate struct {
-		name     string
-		distance int
+		name             string
+		distance, shared int
 	}
 	var near []candidate
 	for _, name := range catalog.Names() {
@@ -75,18 +76,29 @@ func nearestNames(text string) string {
 			distance = 0
 		}
 		if distance <= maxNameDistance && distance < len(text) {
-			near = append(near, candidate{name, distance})
+			near = append(near, candidate{name, distance, sharedLetters(text, name)})
 		}
 	}
 	if len(near) == 0 {
 		return ""
 	}
-	slices.SortStableFunc(near, func(a, b candidate) int { return a.distance - b.distance })
+	slices.SortStableFunc(near, func(a, b candidate) int {
+		return cmp.Or(a.distance-b.distance, b.shared-a.shared)
+	})
 	var names []string
 	for _, c := range near[:min(len(near), maxSuggested)] {
 		names = append(names, c.name)
 	}
 	return "; nearest: " + strings.Join(names, ", ")
+}
+
+// sharedLetters counts the letters at the beginning that both have.
+func sharedLetters(a, b string) int {
+	n := 0
+	for n < min(len(a), len(b)) && a[n] == b[n] {
+		n++
+	}
+	return n
 }
 
 // entryProfile makes a profile of an entry of the catalogue: its title is the

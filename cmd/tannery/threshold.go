@@ -49,7 +49,7 @@ decoder of these graphs can pass, by the area theorem.
 With --iterations N the decoder has N iterations to bring the bit error rate
 down to --target-error.`,
 		Args:              atMost(1, "one profile"),
-		ValidArgsFunction: profileFiles,
+		ValidArgsFunction: profileArguments(1),
 		RunE:              func(cmd *cobra.Command, args []string) error { return runThreshold(cmd, args, o) },
 	}
 	o.addChannel(cmd, "the channel; by default the one that the profile's results name")

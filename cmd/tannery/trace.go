@@ -38,7 +38,7 @@ is the channel. Long traces are thinned in the table, never in CSV or JSON.
 The evolution ends when it is certain that errors vanish (converged), at a fixed
 point (stalled), or after --iterations (undecided).`,
 		Args:              atMost(1, "one profile"),
-		ValidArgsFunction: profileFiles,
+		ValidArgsFunction: profileArguments(1),
 		RunE:              func(cmd *cobra.Command, args []string) error { return runTrace(cmd, args, o) },
 	}
 	o.addChannel(cmd, "the channel; by default the one that the profile's results name")
