@@ -21,9 +21,12 @@ type approach struct {
 	high  float64 // cannot be exceeded, or has failed
 	bound float64 // of the stability condition
 
+	unchecked bool // omit the run above the estimate
+
 	runs       []course // that succeeded, in order of parameter
 	iterations int
-	estimate   float64
+	tunnel     float64   // where the first tunnel closes, as last predicted
+	estimate   float64   // of the threshold: there, or at the bound
 	error      float64   // of the estimate: extrapolation and stopping rule
 	critical   []closing // places where the tunnel closes, the first one first
 }
@@ -40,9 +43,14 @@ const (
 	// product of the distances of its three runs, each of which is left at
 	// 0.15 of itself, so that it gains a factor of 300 in the end.
 	extrapolationGain = 8
+	// nearBound is how near the stability bound, relative to it, a run must
+	// have come before the bound is taken for the threshold.
+	nearBound = 2e-3
+	// firstStride is how far the second run goes towards the guess, and
 	// leastStart is the least distance of the first run from the guess,
 	// relative to it.
-	leastStart = 0.02
+	firstStride = 0.6
+	leastStart  = 0.02
 	// fairEstimate is how far an estimate may be off, in tolerances, for
 	// transfer to build on it, and transferGain by how much the difference
 	// of two grids in it is smaller than itself.
@@ -118,9 +126,17 @@ func (a *approach) transfer(ctx context.Context, coarse *approach, tolerance flo
 	return true, nil
 }
 
+// decoded is where a run ends without proof of success.
+func (a *approach) decoded() float64 {
+	if a.unchecked {
+		return shallow
+	}
+	return deep
+}
+
 // run evolves at one parameter and files the outcome.
 func (a *approach) run(ctx context.Context, parameter float64) (bool, error) {
-	c, err := evolve(ctx, a.e, a.grid, a.f, parameter, iterationCap)
+	c, err := evolve(ctx, a.e, a.grid, a.f, parameter, a.decoded())
 	a.iterations += len(c.rate)
 	if err != nil {
 		return false, err
@@ -141,8 +157,7 @@ func (a *approach) run(ctx context.Context, parameter float64) (bool, error) {
 // find approaches the threshold until successive predictions agree within
 // tolerance (of the parameter), beginning at the given distance below guess.
 func (a *approach) find(ctx context.Context, guess, distance, tolerance float64) error {
-	a.runs, a.iterations, a.critical = nil, 0, nil
-	a.estimate, a.error = math.NaN(), math.Inf(1)
+	a.runs, a.iterations, a.tunnel = nil, 0, math.NaN()
 	next := guess - distance
 	for range runCap {
 		if a.high-a.low <= tolerance {
@@ -157,48 +172,62 @@ func (a *approach) find(ctx context.Context, guess, distance, tolerance float64)
 		switch {
 		case n == 0:
 			distance *= 2
-			next = max(next-distance, next/2)
+			next = max(next-distance, a.low+(next-a.low)/2)
 			continue
 		case n == 1 && ok:
-			next = a.below(next + distance*0.6)
+			next = a.below(next + distance*firstStride)
 			continue
 		case n == 1:
 			next = a.runs[0].parameter + (next-a.runs[0].parameter)/2
 			continue
 		}
-		previous := a.estimate
+		previous := a.tunnel
 		a.predict()
-		a.error = math.Abs(a.estimate-previous) / extrapolationGain
 		last := a.runs[n-1].parameter
-		if ok && n > 2 && a.error < tolerance {
-			wrong, err := a.refuted(ctx, a.estimate+(a.estimate-last))
-			if !wrong || err != nil {
+		ahead := a.estimate - last
+		if ok && n > 2 && a.settled(previous, tolerance) {
+			above := a.estimate + ahead
+			if a.unchecked || above >= a.high {
+				return nil
+			}
+			// A run as far above the estimate as the last one is below it
+			// must not succeed.
+			if ok, err = a.run(ctx, above); !ok {
 				return err
 			}
-			continue
+			a.predict()
+			last = a.runs[n].parameter
+			ahead = a.estimate - last
 		}
-		share := remaining
-		if !ok {
-			share = 0.5
+		if ok {
+			ahead *= 1 - remaining
+		} else {
+			ahead /= 2
 		}
-		next = a.below(a.estimate - share*(a.estimate-last))
+		next = a.below(last + ahead)
 	}
 	return fmt.Errorf("no threshold found in %d runs: it lies between %v and %v", runCap, a.low, a.high)
 }
 
-// refuted tells whether a run above the estimate succeeds, as it must not.
-func (a *approach) refuted(ctx context.Context, above float64) (bool, error) {
-	estimate, failures := a.estimate, a.critical
-	if above >= a.high {
-		return false, nil
+// settled sets the error of the estimate and tells whether it is within the
+// tolerance, given the previous prediction of the tunnel's closing.
+func (a *approach) settled(previous, tolerance float64) bool {
+	change := math.Abs(a.tunnel-previous) / extrapolationGain
+	if a.tunnel == previous {
+		change = 0 // where both are infinite
 	}
-	ok, err := a.run(ctx, above)
-	if ok {
-		a.predict()
-		return true, err
+	last := a.runs[len(a.runs)-1].parameter
+	switch {
+	case a.estimate > a.high:
+		// A run has failed below it.
+		a.error = math.Inf(1)
+	case a.tunnel-change > a.bound:
+		a.error = 0
+		return a.bound-last < nearBound*a.bound
+	default:
+		a.error = change
 	}
-	a.estimate, a.critical = estimate, failures
-	return false, err
+	return a.error < tolerance
 }
 
 // below returns the parameter, or one below high if it is not.
@@ -213,10 +242,11 @@ func (a *approach) below(parameter float64) float64 {
 // predict sets the estimate from the last runs.
 func (a *approach) predict() {
 	a.critical = closings(a.runs[max(0, len(a.runs)-3):])
-	a.estimate = min(a.bound, a.high)
+	a.tunnel = math.Inf(1)
 	if len(a.critical) > 0 {
-		a.estimate = min(a.estimate, a.critical[0].parameter)
+		a.tunnel = a.critical[0].parameter
 	}
+	a.estimate = min(a.tunnel, a.bound)
 }
 
 // places lists the critical places of the last runs.

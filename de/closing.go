@@ -1,6 +1,10 @@
 package de
 
-import "math"
+import (
+	"cmp"
+	"math"
+	"slices"
+)
 
 // The threshold on one grid is found without long runs near it. In an
 // evolution that succeeds, B falls at some rate at each depth -ln B, slowest
@@ -16,7 +20,6 @@ import "math"
 // closing is where the tunnel is predicted to close.
 type closing struct {
 	parameter float64
-	depth     float64
 	entropy   float64 // of the messages there
 }
 
@@ -29,27 +32,21 @@ const minSkip = 3
 // increasing order of parameter; the least first.
 func closings(runs []course) []closing {
 	last := runs[len(runs)-1]
-	at := make([]float64, len(last.depth))
-	for i := range at {
-		at[i] = math.Inf(1)
-		if i >= minSkip {
-			at[i] = closesAt(runs, last.depth[i], last.rate[i])
-		}
+	// In terms of nearness 1/(parameter-last), where a tunnel that does not
+	// close has 0, closings are local maxima.
+	near := make([]float64, len(last.depth))
+	for i := minSkip; i < len(near); i++ {
+		near[i] = 1 / (closesAt(runs, last.depth[i], last.rate[i]) - last.parameter)
 	}
 	var found []closing
-	for i := minSkip; i < len(at); i++ {
-		if math.IsInf(at[i], 1) || at[i] > at[i-1] || i+1 < len(at) && at[i] > at[i+1] {
+	for i := minSkip; i < len(near)-1; i++ {
+		if near[i] == 0 || near[i] < near[i-1] || near[i] <= near[i+1] {
 			continue
 		}
-		c := closing{at[i], last.depth[i], last.entropy[i]}
-		if i+1 < len(at) && !math.IsInf(at[i-1], 1) && !math.IsInf(at[i+1], 1) {
-			c.depth, c.parameter = parabolaMinimum(last.depth[i-1:i+2], at[i-1:i+2])
-		}
-		found = append(found, c)
-		for j := len(found) - 1; j > 0 && found[j].parameter < found[j-1].parameter; j-- {
-			found[j], found[j-1] = found[j-1], found[j]
-		}
+		most := parabolaMaximum(near[i-1], near[i], near[i+1])
+		found = append(found, closing{last.parameter + 1/most, last.entropy[i]})
 	}
+	slices.SortStableFunc(found, func(a, b closing) int { return cmp.Compare(a.parameter, b.parameter) })
 	return found
 }
 
@@ -82,14 +79,13 @@ func closesAt(runs []course, depth, rate float64) float64 {
 	return x0 - y0/slope
 }
 
-// parabolaMinimum returns the place and value of the minimum of the parabola
-// through three points of which the middle one is lowest.
-func parabolaMinimum(x, y []float64) (at, least float64) {
-	left, right := (y[1]-y[0])/(x[1]-x[0]), (y[2]-y[1])/(x[2]-x[1])
-	bend := (right - left) / (x[2] - x[0])
-	if !(bend > 0) {
-		return x[1], y[1]
+// parabolaMaximum returns the maximum of the parabola through three equally
+// spaced values of which the middle one is highest. It is at most 1/8 above
+// it if none is negative.
+func parabolaMaximum(left, middle, right float64) float64 {
+	bend := 2*middle - left - right
+	if bend == 0 {
+		return middle
 	}
-	at = (x[0]+x[1])/2 - left/(2*bend)
-	return at, y[1] + (at-x[1])*(left+bend*(at-x[0]))
+	return middle + (right-left)*(right-left)/(8*bend)
 }

@@ -22,7 +22,7 @@ type CheckNode struct {
 // NewCheckNode returns the operation for the edge-perspective distribution
 // rho, degrees at least 2.
 func (g *Grid) NewCheckNode(rho ensembles.Distribution) *CheckNode {
-	return &CheckNode{grid: g, polynomial: newPolynomial(rho), cells: make([]float64, g.points*cellsPerPoint)}
+	return &CheckNode{grid: g, polynomial: newPolynomial(rho), cells: make([]float64, g.points*g.cells)}
 }
 
 // Apply sets dst to the density of the outgoing messages for incoming ones of

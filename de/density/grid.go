@@ -24,6 +24,7 @@ import (
 // shorter range [0, U) with a finer step, cut off at U without any error below
 // it; results are taken from the finest level that covers them.
 type Grid struct {
+	shape
 	points int
 	step   float64   // of x
 	bulge  []float64 // 2·cosh(x/2), mass per g, with 1 at x=0 and half at the end
@@ -34,30 +35,32 @@ type Grid struct {
 	entropyWeight []float64
 }
 
-// The reach of the grids and the shape of the levels. TestGridShape holds
-// the error that they leave against a much finer grid.
-const (
+// shape says how far a grid reaches and how its levels are laid out.
+type shape struct {
 	// reach is the largest magnitude with a node of its own. What lies
 	// beyond, error probabilities below e^-20, keeps its Bhattacharyya
 	// parameter.
-	reach = 20.0
-	// uTop is the range of the coarsest check-side level. What lies near its
+	reach float64
+	// top is the range of the coarsest check-side level. What lies near its
 	// end and beyond, magnitudes below 4e-5 whose information is x²/8, is
 	// counted as erased.
-	uTop = 12.0
-	// levelRatio is how much shorter the range of each level is, and
-	// levelCount how many there are: with 256 points the finest step is
-	// 7e-7, a magnitude of 15.
-	levelRatio = 8.0
-	levelCount = 6
-	// cellsPerPoint is the size of each level per point of the variable
-	// side.
-	cellsPerPoint = 2
+	top float64
+	// ratio is how much shorter the range of each level is, and count how
+	// many there are: with 256 points the finest step is 7e-7, a magnitude
+	// of 15.
+	ratio float64
+	count int
+	// cells is the size of each level per point of the variable side.
+	cells int
 	// damping is the exponent D of the factor e^(-Du/U) under which a
 	// level's convolution is done, so that what wraps around from [U, 2U)
 	// returns reduced by e^(-D), while rounding grows by e^D.
-	damping = 16.0
-)
+	damping float64
+}
+
+// standard is the shape of all grids. TestGridShape holds the error that it
+// leaves against a longer and finer one.
+var standard = shape{reach: 20, top: 12, ratio: 8, count: 6, cells: 2, damping: 16}
 
 // MinPoints and MaxPoints bound the number of points of a Grid.
 const (
@@ -79,14 +82,15 @@ func NewGrid(points int) (*Grid, error) {
 	if g, ok := grids.Load(points); ok {
 		return g.(*Grid), nil
 	}
-	g, _ := grids.LoadOrStore(points, buildGrid(points))
+	g, _ := grids.LoadOrStore(points, buildGrid(points, standard))
 	return g.(*Grid), nil
 }
 
-func buildGrid(points int) *Grid {
+func buildGrid(points int, s shape) *Grid {
 	g := &Grid{
+		shape:         s,
 		points:        points,
-		step:          reach / float64(points),
+		step:          s.reach / float64(points),
 		bulge:         make([]float64, points+1),
 		errorWeight:   make([]float64, points+1),
 		entropyWeight: make([]float64, points+1),
@@ -103,10 +107,10 @@ func buildGrid(points int) *Grid {
 		g.errorWeight[k] = g.bulge[k] / (1 + math.Exp(x))
 		g.entropyWeight[k] = g.bulge[k] * binaryEntropy(x)
 	}
-	top := uTop
-	for l := range levelCount {
+	top := s.top
+	for l := range s.count {
 		g.levels = append(g.levels, newLevel(g, l, top))
-		top /= levelRatio
+		top /= s.ratio
 	}
 	return g
 }
@@ -134,15 +138,15 @@ func (g *Grid) place(x float64) stencil {
 		}
 		t := x / g.step
 		return stencil{0, lagrange(t*t, nodes)}
-	case x < reach-g.step:
+	case x < g.reach-g.step:
 		k := math.Floor(x / g.step)
 		return stencil{int32(k) - 1, lagrange(x/g.step-k, centred)}
-	case x < reach:
+	case x < g.reach:
 		before := math.Exp(g.step / 2)
-		share := (before - math.Exp((reach-x)/2)) / (before - 1)
+		share := (before - math.Exp((g.reach-x)/2)) / (before - 1)
 		return stencil{last, [order]float64{2: 1 - share, 3: share}}
 	default:
-		return stencil{last, [order]float64{3: math.Exp((reach - x) / 2)}}
+		return stencil{last, [order]float64{3: math.Exp((g.reach - x) / 2)}}
 	}
 }
 

@@ -31,14 +31,14 @@ const (
 )
 
 func newLevel(g *Grid, index int, top float64) *level {
-	size := g.points * cellsPerPoint
+	size := g.points * g.cells
 	step := top / float64(size)
-	finest := index == levelCount-1
+	finest := index == g.count-1
 	v := &level{fft: newFFT(size / 2), unravel: make([]complex128, size/4+1)}
 	for k := range v.unravel {
 		v.unravel[k] = unitRoot(k, size)
 	}
-	damp := func(j int) float64 { return math.Exp(-damping * float64(j) / float64(size)) }
+	damp := func(j int) float64 { return math.Exp(-g.damping * float64(j) / float64(size)) }
 	undamp := func(j int) float64 { return 1 / damp(j) / float64(size/2) }
 
 	v.fromNode = g.points + 1
@@ -63,7 +63,7 @@ func newLevel(g *Grid, index int, top float64) *level {
 			}
 		}
 		if !finest {
-			share -= handover(u * levelRatio / top)
+			share -= handover(u * g.ratio / top)
 		}
 		if share == 0 && v.out == nil {
 			continue

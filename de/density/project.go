@@ -16,15 +16,15 @@ func (g *Grid) Project(c channel.Density) *Density {
 		d.put(a.Magnitude, a.Mass)
 	}
 	if c.PDF != nil {
-		end := math.Min(c.End, reach)
+		end := math.Min(c.End, g.reach)
 		for low := 0.0; low < end; low += g.step {
 			d.integrate(c.PDF, low, math.Min(low+g.step, end), projectionDepth)
 		}
-		if c.End > reach {
+		if c.End > g.reach {
 			// Beyond the grid only the Bhattacharyya parameter counts. It
 			// falls like e^(-x/2), so a few more units say all.
 			const beyond = 64
-			for low := reach; low < math.Min(c.End, reach+beyond); low++ {
+			for low := g.reach; low < math.Min(c.End, g.reach+beyond); low++ {
 				d.integrate(c.PDF, low, math.Min(low+1, c.End), projectionDepth)
 			}
 		}
