@@ -91,12 +91,14 @@ func (BECDesign) finish(p Problem, r *run) (Result, error) {
 	e := newErasureDesigner(p)
 	// The budget is spent, but what was found must be made whole.
 	ctx := context.Background()
-	best := r.best
+	best, err := tidy(ctx, e, r.best)
+	if err != nil {
+		return Result{}, err
+	}
 	d := e.at(best)
 	var threshold de.Threshold
 	const repairs = 5
 	for range repairs {
-		var err error
 		if threshold, err = (de.ExactEngine{}).Threshold(ctx, best.ensemble(), p.Channel); err != nil {
 			return Result{}, err
 		}
@@ -118,12 +120,10 @@ func (BECDesign) finish(p Problem, r *run) (Result, error) {
 	result := Result{Ensemble: best.ensemble(), Threshold: withMargin(threshold, best.ensemble(), p)}
 	free := best
 	if len(best.degrees) < len(p.VariableDegrees) {
-		var err error
 		if free, err = e.best(ctx, best.rho, p.VariableDegrees, best); err != nil {
 			return Result{}, err
 		}
 	}
-	var err error
 	if result.Certificate, err = certify(p, e.at(free), free.rho, free.optimum); err != nil {
 		return Result{}, err
 	}

@@ -23,7 +23,7 @@ type erasureTunnel struct {
 	x  []float64 // on the grid; made when first used
 	by map[int][]float64
 
-	last, lastX float64 // the point asked for last
+	last, lastX, lastLog float64 // the point asked for last, with x and ln y
 }
 
 const (
@@ -86,10 +86,14 @@ func softplus(p float64) float64 {
 	return math.Log1p(math.Exp(p))
 }
 
+// inverseTolerance is the relative step after which Newton's method for ln(1-x)
+// ends: the error left is of its square.
+const inverseTolerance = 1e-10
+
 // checkInverse returns ln(1-x) for the x with ρ(1-x) = 1-y, given ln(1-y) < 0,
 // to full relative precision. In z = ln(1-x), ln ρ(e^z) is convex and
-// increasing, so Newton's method converges from any start after one step from
-// the right.
+// increasing, so Newton's method converges, and from the right without a
+// detour; the start is there by Jensen's inequality.
 func checkInverse(rho ensembles.Distribution, logarithm float64) float64 {
 	if len(rho) == 1 {
 		return logarithm / float64(rho[0].Degree-1)
@@ -125,19 +129,19 @@ func checkInverse(rho ensembles.Distribution, logarithm float64) float64 {
 		}
 		step := (logarithm - value) / derivative
 		z += step
-		if math.Abs(step) <= 1e-16*math.Abs(z) {
+		if math.Abs(step) <= inverseTolerance*math.Abs(z) {
 			break
 		}
 	}
 	return z
 }
 
-// erasureX returns x at p.
-func (e *erasureTunnel) erasureX(p float64) float64 {
+// point returns x and ln y at p.
+func (e *erasureTunnel) point(p float64) (x, logY float64) {
 	if p != e.last || e.lastX == 0 {
-		e.last, e.lastX = p, -math.Expm1(checkInverse(e.rho, -softplus(-p)))
+		e.last, e.lastX, e.lastLog = p, -math.Expm1(checkInverse(e.rho, -softplus(-p))), logErasure(p)
 	}
-	return e.lastX
+	return e.lastX, e.lastLog
 }
 
 // erasureY returns y = 1-ρ(1-x), precise for small x too.
@@ -155,14 +159,15 @@ func logit(y float64) float64 { return math.Log1p(-y) - math.Log(y) }
 func (e *erasureTunnel) grid() []float64 { return e.powers.p }
 
 func (e *erasureTunnel) at(p float64, degree int) float64 {
-	return math.Exp(float64(degree-1)*logErasure(p)) / e.erasureX(p)
+	x, l := e.point(p)
+	return math.Exp(float64(degree-1)*l) / x
 }
 
 func (e *erasureTunnel) column(degree int) []float64 {
 	if e.x == nil {
 		e.x = make([]float64, len(e.powers.p))
 		for k, p := range e.powers.p {
-			e.x[k] = e.erasureX(p)
+			e.x[k], _ = e.point(p)
 		}
 		e.by = map[int][]float64{}
 	}
@@ -188,8 +193,8 @@ const (
 
 func (e *erasureTunnel) price(points, weights []float64, degrees []int, out []float64) {
 	for k, p := range points {
-		w, l := weights[k]/e.erasureX(p), logErasure(p)
-		addPowers(w, l, degrees, out)
+		x, l := e.point(p)
+		addPowers(weights[k]/x, l, degrees, out)
 	}
 }
 

@@ -39,7 +39,11 @@ func (GaussianDesign) search(ctx context.Context, p Problem, r *run) error {
 // finish measures the best by the Gaussian approximation.
 func (GaussianDesign) finish(p Problem, r *run) (Result, error) {
 	ctx := context.Background()
-	best := r.best
+	g := newGaussianDesigner(p, r.limit)
+	best, err := tidy(ctx, g, r.best)
+	if err != nil {
+		return Result{}, err
+	}
 	threshold, err := (de.GaussianEngine{}).Threshold(ctx, best.ensemble(), p.Channel)
 	if err != nil {
 		return Result{}, err
@@ -48,7 +52,6 @@ func (GaussianDesign) finish(p Problem, r *run) (Result, error) {
 	if threshold.Value > r.limit {
 		threshold.Warnings = append(threshold.Warnings, "above the Shannon limit: the Gaussian approximation does not hold for this ensemble")
 	}
-	g := newGaussianDesigner(p, r.limit)
 	free := best
 	if len(best.degrees) < len(p.VariableDegrees) {
 		if free, err = g.best(ctx, best.rho, p.VariableDegrees, best); err != nil {

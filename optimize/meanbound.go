@@ -9,6 +9,9 @@ import "math"
 // 1999; recalled). It is below the Shannon limit 1-rate and tends to it with
 // a; 0 if the mean degree is too small for the rate, a(1-rate) ≤ 1.
 func MeanDegreeBound(mean, rate float64) float64 {
+	if mean*(1-rate) <= 1 {
+		return 0
+	}
 	// ε/(1-(1-ε)^a) rises from 1/a at ε = 0 to 1 at ε = 1.
 	holds := func(epsilon float64) bool {
 		return epsilon <= (1-rate)*-math.Expm1(mean*math.Log1p(-epsilon))
