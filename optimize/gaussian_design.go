@@ -73,8 +73,7 @@ func newGaussianDesigner(p Problem, sigma float64) gaussianDesigner {
 	return gaussianDesigner{p, limit, newGaussianChecks(limit * gaussianBelow)}
 }
 
-// meanOf returns the mean LLR 2/σ² of the channel; it is its own inverse up
-// to a square: σ = √(2/s).
+// meanOf returns the mean LLR s = 2/σ² of the channel.
 func meanOf(sigma float64) float64 { return 2 / (sigma * sigma) }
 
 // design is the programme at mean LLR s.

@@ -130,14 +130,14 @@ func (m *means) coarse(ctx context.Context) (stop bool, err error) {
 // bracket is an interval between knots in which a maximum may lie: the
 // derivative of t by the mean is known at its ends.
 type bracket struct {
-	low, high           int // the check degrees
-	a, b                float64
-	slopeA, slopeB      float64
-	near                *candidate
-	weightA, weightB    float64 // of the Illinois variant of the secant method
-	next                float64
-	probed, closed      bool
-	knownLeft, knownTop bool
+	low, high             int // the check degrees
+	a, b                  float64
+	slopeA, slopeB        float64
+	near                  *candidate
+	weightA, weightB      float64 // of the Illinois variant of the secant method
+	next                  float64
+	probed, closed        bool
+	knownLeft, knownRight bool
 }
 
 // between searches the intervals next to the best knot and returns the best
@@ -159,7 +159,7 @@ func (m *means) between(ctx context.Context, from, to float64) (best *candidate,
 			b.slopeA, b.knownLeft = m.slope(b, left, b.a), true
 		}
 		if right != nil {
-			b.slopeB, b.knownTop = m.slope(b, right, b.b), true
+			b.slopeB, b.knownRight = m.slope(b, right, b.b), true
 		}
 		open = append(open, b)
 	}
@@ -202,7 +202,7 @@ func (b *bracket) propose(best *candidate) bool {
 	if b.closed {
 		return false
 	}
-	inside := b.knownLeft && b.knownTop && b.slopeA < 0 && b.slopeB > 0
+	inside := b.knownLeft && b.knownRight && b.slopeA < 0 && b.slopeB > 0
 	if !inside {
 		// Falling or rising throughout: look once in the middle, where the
 		// slope decides which half, if any, to go on with.
@@ -235,7 +235,7 @@ func (b *bracket) take(m *means, c *candidate) {
 		b.a, b.slopeA, b.knownLeft = b.next, slope, true
 		b.weightA, b.weightB = 1, b.weightB/2
 	case slope > 0:
-		b.b, b.slopeB, b.knownTop = b.next, slope, true
+		b.b, b.slopeB, b.knownRight = b.next, slope, true
 		b.weightA, b.weightB = b.weightA/2, 1
 	default:
 		b.closed = true

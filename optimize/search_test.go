@@ -178,8 +178,8 @@ func TestRandomBriefs(t *testing.T) {
 // Shokrollahi's right-regular sequences (New sequences of linear time erasure
 // codes approaching the channel capacity, 1999; recalled), thresholds and
 // rates computed from the closed form. With their ρ and degrees, at their
-// rate, the best λ can be no worse; and as they are not optimal at finite
-// degree, it is not certain to be no better.
+// rate, the best λ is no worse; it is a little better, as the sequences are
+// optimal only in the limit of large degrees.
 func TestRightRegularReached(t *testing.T) {
 	for _, c := range []struct {
 		a, n            int
