@@ -27,6 +27,9 @@ func TestJSONKeys(t *testing.T) {
 		{"limit --channel biawgn --rate 0.5 --length 1000 --frame-error 1e-3", "tannery/limit/1", limitKeys + " finite_length.value"},
 		{"limit --matrix ../../testdata/channels/buoy.csv", "tannery/limit/1", limitKeys + " capacity lower upper distribution"},
 		{"trace --lambda 3:1 --rho 6:1 --channel bec --parameter 0.3", "tannery/trace/1", "schema channel parameter value method outcome narrowest points warnings"},
+		{"compare ru01-r50-d3 en302307-r50-d8 --channel bec", "tannery/compare/1", "schema distance target_error sort rows"},
+		{"catalog --rate 0.5", "tannery/catalog/1", "schema entries"},
+		{"catalog rsu01-r50-d4", "tannery/catalog-entry/1", "schema name source trust design_rate published profile.lambda"},
 		{"export --lambda 3:1 --rho 6:1 --channel bec --length 100", "tannery/export/1", "schema profile profile.kind profile.realization profile.realization.variable_nodes warnings"},
 	} {
 		text := succeed(t, "", append(strings.Fields(c.args), "--json")...)

@@ -17,10 +17,15 @@ type traceOptions struct {
 	methodOption
 	iterations integerOption
 	csv        bool
+	draw       bool
+	pictureOption
 }
 
 func newTrace() *cobra.Command {
-	o := &traceOptions{iterations: integerOption{low: 1, high: maxIterations, value: 1000}}
+	o := &traceOptions{
+		iterations:    integerOption{low: 1, high: maxIterations, value: 1000},
+		pictureOption: newPictureOption("tunnel", "errors", "degrees"),
+	}
 	cmd := &cobra.Command{
 		Use:   "trace PROFILE [options]",
 		Short: "the evolution of a profile, iteration by iteration",
@@ -28,6 +33,8 @@ func newTrace() *cobra.Command {
 tannery trace harbour.yaml --channel biawgn --parameter 0.94
 # the same at Eb/N0 in dB, every iteration as CSV
 tannery trace harbour.yaml --eb-n0 0.9 --csv
+# its tunnel as a picture, for colleagues
+tannery trace harbour.yaml --parameter 0.94 --plot tunnel.svg
 # the (3,6) ensemble just below its threshold on the BEC
 tannery trace --lambda 3:1 --rho 6:1 --channel bec --parameter 0.4294`,
 		Long: `One row per iteration: error probability, entropy (bits) and Bhattacharyya
@@ -36,7 +43,11 @@ messages from check nodes, and the bit error probability of the decision. Row 0
 is the channel. Long traces are thinned in the table, never in CSV or JSON.
 
 The evolution ends when it is certain that errors vanish (converged), at a fixed
-point (stalled), or after --iterations (undecided).`,
+point (stalled), or after --iterations (undecided).
+
+With --plot a picture is written as well: the tunnel as an EXIT chart in
+entropies, the error probabilities against iterations, or the degree profile.
+At a terminal, or with --draw, the text ends with the tunnel seen from above.`,
 		Args:              atMost(1, "one profile"),
 		ValidArgsFunction: profileArguments(1),
 		RunE:              func(cmd *cobra.Command, args []string) error { return runTrace(cmd, args, o) },
@@ -47,6 +58,8 @@ point (stalled), or after --iterations (undecided).`,
 	o.add(cmd)
 	cmd.Flags().Var(&o.iterations, "iterations", "most iterations to follow; 1000 if not given")
 	cmd.Flags().BoolVar(&o.csv, "csv", false, "answer with CSV, one line per iteration")
+	cmd.Flags().BoolVar(&o.draw, "draw", false, "draw the tunnel in text; without it, at a terminal only")
+	o.addPicture(cmd, "tunnel, errors or degrees; tunnel if not given")
 	return cmd
 }
 
@@ -77,11 +90,29 @@ func runTrace(cmd *cobra.Command, args []string, o *traceOptions) error {
 	if err != nil {
 		return err
 	}
+	plot, err := o.open(cmd)
+	if err != nil {
+		return err
+	}
 	trace, err := engine.Trace(cmd.Context(), p.Ensemble, f, value, o.iterations.value)
 	if err != nil {
 		return methodError(err)
 	}
 	answer := traceAnswer(trace, f, p.Ensemble.DesignRate())
+	answer.Name = profileName(args)
+	answer.Draw = o.draw || atTerminal(cmd)
+	if plot != nil {
+		drawing := answer.TunnelPicture()
+		switch o.picture.value {
+		case "errors":
+			drawing = answer.ErrorPicture()
+		case "degrees":
+			drawing = report.DegreePicture(answer.Name, p.Ensemble)
+		}
+		if err := plot.write(drawing); err != nil {
+			return err
+		}
+	}
 	if o.csv {
 		return answer.WriteCSV(cmd.OutOrStdout())
 	}

@@ -23,6 +23,8 @@ type Trace struct {
 	Warnings  []string     `json:"warnings"`
 
 	Symbol string `json:"-"`
+	Name   string `json:"-"` // of the profile
+	Draw   bool   `json:"-"` // the tunnel, below the table
 }
 
 // TracePoint is the state after an iteration; 0 is the channel.
@@ -93,6 +95,9 @@ func (r *Trace) WriteText(w io.Writer) error {
 	if len(shown) < len(r.Points) {
 		t.Gap()
 		t.Paragraph("%d of %d iterations shown; --csv and --json give all.", len(shown), len(r.Points))
+	}
+	if r.Draw {
+		r.Tunnel(&t)
 	}
 	_, err := t.WriteTo(w)
 	return err
