@@ -94,6 +94,8 @@ func runSearch(cmd *cobra.Command, args []string, o *searchOptions) error {
 	answer := searchAnswer(b, family, p, result)
 	answer.Seconds = time.Since(start).Seconds()
 	answer.File = o.output
+	answer.Tunnel = tunnelAt(cmd.Context(), result.Ensemble, family, result.Threshold, nil)
+	answer.Draw = atTerminal(cmd)
 	if err := out.deliver(p, answer); err != nil {
 		return err
 	}

@@ -23,6 +23,11 @@ type Search struct {
 	Link        *LinkMargin  `json:"link"`
 	Threshold   *Threshold   `json:"threshold"`
 
+	// Tunnel is the evolution a little below the threshold; null if there is
+	// none to show.
+	Tunnel *Trace `json:"tunnel"`
+
+	Draw bool   `json:"-"` // the tunnel, at the end
 	File string `json:"-"` // where the profile went; "" for nowhere, "-" for standard output
 }
 
@@ -86,6 +91,11 @@ func (r *Search) WriteText(w io.Writer) error {
 	}
 	if r.File != "" && r.File != "-" {
 		t.Row("written to", "%s", r.File)
+	}
+	if r.Draw && r.Tunnel != nil {
+		r.Tunnel.Tunnel(&t)
+		t.Gap()
+		t.Paragraph("at %s = %s; trace shows it at other places and as a picture.", symbol, short(r.Tunnel.Value))
 	}
 	_, err := t.WriteTo(w)
 	return err
