@@ -27,7 +27,7 @@ type approach struct {
 	iterations int
 	tunnel     float64   // where the first tunnel closes, as last predicted
 	estimate   float64   // of the threshold: there, or at the bound
-	error      float64   // of the estimate: extrapolation and stopping rule
+	error      float64   // of tunnel: extrapolation and stopping rule
 	critical   []closing // places where the tunnel closes, the first one first
 }
 
@@ -121,7 +121,8 @@ func (a *approach) transfer(ctx context.Context, coarse *approach, tolerance flo
 	}
 	a.predict()
 	missing := coarse.estimate - fair.estimate
-	a.estimate = min(a.estimate+missing, a.bound)
+	a.tunnel += missing
+	a.estimate = min(a.tunnel, a.bound)
 	a.error = coarse.error + math.Abs(missing)/transferGain
 	return true, nil
 }
@@ -161,7 +162,8 @@ func (a *approach) find(ctx context.Context, guess, distance, tolerance float64)
 	next := guess - distance
 	for range runCap {
 		if a.high-a.low <= tolerance {
-			a.estimate, a.error = a.low+(a.high-a.low)/2, (a.high-a.low)/2
+			a.tunnel, a.error = a.low+(a.high-a.low)/2, (a.high-a.low)/2
+			a.estimate = a.tunnel
 			return nil
 		}
 		ok, err := a.run(ctx, next)
@@ -209,23 +211,20 @@ func (a *approach) find(ctx context.Context, guess, distance, tolerance float64)
 	return fmt.Errorf("no threshold found in %d runs: it lies between %v and %v", runCap, a.low, a.high)
 }
 
-// settled sets the error of the estimate and tells whether it is within the
-// tolerance, given the previous prediction of the tunnel's closing.
+// settled sets the error of the tunnel's closing, given the previous
+// prediction of it, and tells whether that of the estimate is within the
+// tolerance.
 func (a *approach) settled(previous, tolerance float64) bool {
-	change := math.Abs(a.tunnel-previous) / extrapolationGain
+	a.error = math.Abs(a.tunnel-previous) / extrapolationGain
 	if a.tunnel == previous {
-		change = 0 // where both are infinite
+		a.error = 0 // where both are infinite
 	}
-	last := a.runs[len(a.runs)-1].parameter
 	switch {
 	case a.estimate > a.high:
 		// A run has failed below it.
-		a.error = math.Inf(1)
-	case a.tunnel-change > a.bound:
-		a.error = 0
-		return a.bound-last < nearBound*a.bound
-	default:
-		a.error = change
+		return false
+	case a.tunnel-a.error > a.bound:
+		return a.bound-a.runs[len(a.runs)-1].parameter < nearBound*a.bound
 	}
 	return a.error < tolerance
 }

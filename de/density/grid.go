@@ -46,8 +46,8 @@ type shape struct {
 	// counted as erased.
 	top float64
 	// ratio is how much shorter the range of each level is, and count how
-	// many there are: with 256 points the finest step is 7e-7, a magnitude
-	// of 15.
+	// many there are: with 256 points the finest step is 9e-8, a magnitude
+	// of 17.
 	ratio float64
 	count int
 	// cells is the size of each level per point of the variable side.
@@ -60,7 +60,7 @@ type shape struct {
 
 // standard is the shape of all grids. TestGridShape holds the error that it
 // leaves against a longer and finer one.
-var standard = shape{reach: 20, top: 12, ratio: 8, count: 6, cells: 2, damping: 16}
+var standard = shape{reach: 20, top: 12, ratio: 8, count: 7, cells: 2, damping: 16}
 
 // MinPoints and MaxPoints bound the number of points of a Grid.
 const (
