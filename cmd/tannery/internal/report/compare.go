@@ -46,6 +46,7 @@ type CompareRow struct {
 	Warnings   []string `json:"warnings"`
 
 	Symbol string `json:"-"`
+	Own    bool   `json:"-"` // of the profile that the others are set beside
 }
 
 // WriteText writes for each channel a table of thresholds and gaps and one of
@@ -193,7 +194,7 @@ func (c *Compare) CostPicture() picture.Picture {
 		if r.Limit != nil {
 			limit = *r.Limit
 		}
-		cost.Points = append(cost.Points, picture.CostPoint{Name: r.Profile, EdgesPerBit: r.EdgesPerBit, Threshold: r.Threshold, Limit: limit})
+		cost.Points = append(cost.Points, picture.CostPoint{Name: r.Profile, Own: r.Own, EdgesPerBit: r.EdgesPerBit, Threshold: r.Threshold, Limit: limit})
 	}
 	return cost.Picture()
 }
@@ -210,7 +211,7 @@ func (c *Compare) GapPicture() (p picture.Picture, ok bool) {
 		if r.Gap.DB != nil {
 			gap, gaps.Unit = *r.Gap.DB, "dB"
 		}
-		gaps.Points = append(gaps.Points, picture.GapPoint{Name: r.Profile, LargestDegree: r.LargestVariableDegree, Gap: gap})
+		gaps.Points = append(gaps.Points, picture.GapPoint{Name: r.Profile, Own: r.Own, LargestDegree: r.LargestVariableDegree, Gap: gap})
 	}
 	if len(gaps.Points) == 0 {
 		return picture.Picture{}, false

@@ -16,9 +16,13 @@ func (r *Trace) subject() string {
 	return at + ", method " + r.Method
 }
 
+// endEntropy is the message entropy, in bits, below which a narrow tunnel is a
+// matter of the stability condition at its end, and no place to mark.
+const endEntropy = 1e-4
+
 // narrowestIndex is -1 where the tunnel has no narrowest place to mark.
 func (r *Trace) narrowestIndex() int {
-	if r.Narrowest == nil || r.Outcome == "stalled" {
+	if r.Narrowest == nil || r.Outcome == "stalled" || r.Points[*r.Narrowest].Entropy < endEntropy {
 		return -1
 	}
 	return *r.Narrowest

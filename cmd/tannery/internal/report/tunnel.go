@@ -68,13 +68,10 @@ func trimRight(b *strings.Builder) {
 // marked is the index of the narrowest place or of the fixed point; -1 if
 // there is neither.
 func (r *Trace) marked() int {
-	switch {
-	case r.Outcome == "stalled":
+	if r.Outcome == "stalled" {
 		return len(r.Points) - 2
-	case r.Narrowest != nil && *r.Narrowest < len(r.Points)-1:
-		return *r.Narrowest
 	}
-	return -1
+	return r.narrowestIndex()
 }
 
 // progress is the share of the Bhattacharyya parameter that the iteration

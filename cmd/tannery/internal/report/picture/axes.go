@@ -108,7 +108,7 @@ func (grid) Plot(c draw.Canvas, p *plot.Plot) {
 	x, y := p.Transforms(&c)
 	line := stroke(rule, 0.5)
 	for _, t := range p.X.Tick.Marker.Ticks(p.X.Min, p.X.Max) {
-		if at := x(t.Value); !t.IsMinor() && p.X.Tick.Width > 0 && c.ContainsX(at) {
+		if at := x(t.Value); !t.IsMinor() && !namesBars(p) && c.ContainsX(at) {
 			c.StrokeLine2(line, at, c.Min.Y, at, c.Max.Y)
 		}
 	}
@@ -117,6 +117,12 @@ func (grid) Plot(c draw.Canvas, p *plot.Plot) {
 			c.StrokeLine2(line, c.Min.X, at, c.Max.X, at)
 		}
 	}
+}
+
+// namesBars tells whether the axis across has bars, which need no lines.
+func namesBars(p *plot.Plot) bool {
+	_, ok := p.X.Tick.Marker.(named)
+	return ok
 }
 
 // drawn makes a plotter of a function.

@@ -18,6 +18,7 @@ type Cost struct {
 // CostPoint is a profile.
 type CostPoint struct {
 	Name        string
+	Own         bool // the profile that the others are set beside
 	EdgesPerBit float64
 	Threshold   float64
 	Limit       float64 // Shannon limit at its rate; NaN if there is none
@@ -27,7 +28,7 @@ type CostPoint struct {
 // line between them.
 func (o Cost) Picture() Picture {
 	p := newPlot("edges per code bit")
-	limit, gap, dot := stroke(rust, 1.3), stroke(muted, 0.6, 1.5, 2), glyph(deep, 3, draw.CircleGlyph{})
+	limit, gap, dot := stroke(rust, 1.3), stroke(muted, 0.6, 1.5, 2), dotOf(false)
 	names := make([]string, len(o.Points))
 	var x, y span
 	for i, q := range o.Points {
@@ -57,7 +58,7 @@ func (o Cost) Picture() Picture {
 			p.Add(polyline(up[:], gap), polyline(end[:], limit))
 			guides = append(guides, up, end)
 		}
-		p.Add(markers([]point{{q.EdgesPerBit, q.Threshold}}, dot))
+		p.Add(markers([]point{{q.EdgesPerBit, q.Threshold}}, dotOf(q.Own)))
 		marks = append(marks, labelled{point{q.EdgesPerBit, q.Threshold}, short[i]})
 	}
 	p.Add(labels(marks, guides))

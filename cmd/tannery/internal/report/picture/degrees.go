@@ -66,8 +66,7 @@ func bars(shares []DegreeShare, x string) *plot.Plot {
 	p := newPlot(x)
 	p.X.Min, p.X.Max = -0.6, float64(len(shares))-0.4
 	p.X.Tick.Marker = named{shares, defaultWidth}
-	p.X.Tick.Width = 0 // no lines: the bars stand on their names
-	p.X.Label.Padding = 6
+	p.X.Tick.Length = 3
 	p.Y.Min = 0
 	highest := 0.
 	for i, s := range shares {

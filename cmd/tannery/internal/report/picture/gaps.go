@@ -2,6 +2,7 @@ package picture
 
 import (
 	"fmt"
+	"slices"
 
 	"gonum.org/v1/plot"
 	"gonum.org/v1/plot/vg/draw"
@@ -17,6 +18,7 @@ type Gaps struct {
 // GapPoint is a profile.
 type GapPoint struct {
 	Name          string
+	Own           bool // the profile that the others are set beside
 	LargestDegree int
 	Gap           float64
 }
@@ -28,7 +30,7 @@ const wideGaps = 20
 // Picture draws the gaps, from 0 unless they are very different.
 func (g Gaps) Picture() Picture {
 	p := newPlot("largest variable degree")
-	dot := glyph(deep, 3, draw.CircleGlyph{})
+	dot := dotOf(false)
 	names := make([]string, len(g.Points))
 	var x, y span
 	for i, q := range g.Points {
@@ -59,14 +61,18 @@ func (g Gaps) Picture() Picture {
 	var marks []labelled
 	for i, q := range g.Points {
 		at := point{float64(q.LargestDegree), q.Gap}
-		p.Add(markers([]point{at}, dot))
+		p.Add(markers([]point{at}, dotOf(q.Own)))
 		marks = append(marks, labelled{at, short[i]})
 	}
 	p.Add(labels(marks, nil))
+	legend := []key{{text: "gap of a profile", glyph: &dot}}
+	if slices.ContainsFunc(g.Points, func(q GapPoint) bool { return q.Own }) {
+		legend = append(legend, ownKey())
+	}
 	return Picture{
 		title: "Gap against the largest degree", subject: g.Subject + pattern,
 		alt:    fmt.Sprintf("Gaps of %d profiles to the Shannon limit in %s against their largest variable degree; %s", len(g.Points), g.Unit, g.Subject),
-		legend: []key{{text: "gap of a profile", glyph: &dot}},
+		legend: legend,
 		width:  defaultWidth, height: defaultHeight,
 		contents: func(c draw.Canvas) { drawPlot(c, p, "gap to the Shannon limit, "+g.Unit) },
 	}

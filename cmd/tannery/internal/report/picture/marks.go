@@ -52,3 +52,18 @@ func glyph(c color.Color, radius float64, shape draw.GlyphDrawer) draw.GlyphStyl
 func ring(radius float64) draw.GlyphStyle {
 	return glyph(ink, radius, draw.RingGlyph{})
 }
+
+// dotOf is the marker of a profile, or of the one that the others are set
+// beside.
+func dotOf(own bool) draw.GlyphStyle {
+	if own {
+		return glyph(rust, 4.5, draw.PyramidGlyph{})
+	}
+	return glyph(deep, 3, draw.CircleGlyph{})
+}
+
+// ownKey explains that marker.
+func ownKey() key {
+	own := dotOf(true)
+	return key{text: "this profile", glyph: &own}
+}

@@ -51,15 +51,15 @@ func samples() map[string]Picture {
 	cost, gaps := Cost{Subject: "rate 1/2", Symbol: "σ"}, Gaps{Subject: "rate 1/2", Unit: "dB"}
 	for i := range 20 {
 		d := 3 + i
-		cost.Points = append(cost.Points, CostPoint{fmt.Sprintf("quay-r50-d%d", d), 3 + 0.01*float64(i), 0.97 - 0.1/float64(d), 0.9787})
-		gaps.Points = append(gaps.Points, GapPoint{fmt.Sprintf("quay-r50-d%d", d), d * d, 3 / float64(d*d)})
+		cost.Points = append(cost.Points, CostPoint{fmt.Sprintf("quay-r50-d%d", d), i == 5, 3 + 0.01*float64(i), 0.97 - 0.1/float64(d), 0.9787})
+		gaps.Points = append(gaps.Points, GapPoint{fmt.Sprintf("quay-r50-d%d", d), i == 5, d * d, 3 / float64(d*d)})
 	}
 	all["cost"], all["gaps"] = cost.Picture(), gaps.Picture()
 	cost.Points[3].Limit = math.NaN()
 	all["cost without a limit"] = cost.Picture()
 	cost.Points, gaps.Points = cost.Points[:1], gaps.Points[:1]
 	all["cost of one"], all["gap of one"] = cost.Picture(), gaps.Picture()
-	gaps.Points = []GapPoint{{"a", 3, -0.01}, {"b", 3, 0.5}}
+	gaps.Points = []GapPoint{{"a", false, 3, -0.01}, {"b", false, 3, 0.5}}
 	all["gap beyond the limit"] = gaps.Picture()
 
 	curves := Curves{Subject: "harbour link, 2048 code bits", Axis: "Eb/N0, dB", Confidence: 0.95, Limits: []CurveLimit{{"Shannon limit", 0.187}, {"threshold", 0.34}}}
