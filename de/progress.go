@@ -25,9 +25,13 @@ type course struct {
 
 // Limits of one evolution.
 const (
-	// decoded is the Bhattacharyya parameter at which a stable ensemble counts
+	// deep is the Bhattacharyya parameter at which a stable ensemble counts
 	// as decoded without proof: smaller ones are at the end of the grid.
-	decoded = 1e-6
+	// shallow is that for searches, which hold the stability condition
+	// themselves and can do without the end of the tunnel, slow where the
+	// condition is almost violated.
+	deep    = 1e-6
+	shallow = 5e-4
 	// followed is the Bhattacharyya parameter down to which an evolution is
 	// followed even if its success is certain earlier, to see all tunnels.
 	followed = 1e-3
@@ -44,14 +48,14 @@ const (
 
 // evolve runs an ensemble at one parameter until it succeeds, stalls, or has
 // done the iterations allowed.
-func evolve(ctx context.Context, e ensembles.Ensemble, g *density.Grid, f channel.Family, parameter float64, iterations int) (course, error) {
+func evolve(ctx context.Context, e ensembles.Ensemble, g *density.Grid, f channel.Family, parameter, decoded float64) (course, error) {
 	c := course{parameter: parameter, outcome: Exhausted}
 	b0 := f.Bhattacharyya(parameter)
 	certain := certainBelow(e, b0)
 	stable := StabilityOf(e, f, parameter).Margin > 0
 	v := NewEvolution(e, g, f.Density(parameter))
 	b := v.Messages.Bhattacharyya()
-	for range iterations {
+	for range iterationCap {
 		if err := ctx.Err(); err != nil {
 			return c, err
 		}

@@ -31,6 +31,9 @@ func checkDesign(m Method, p Problem) error {
 	if p.Limits.Iterations > 0 {
 		return fmt.Errorf("iterations %d: %s finds the threshold for unlimited iterations: %w", p.Limits.Iterations, m.Name(), ErrUnsupported)
 	}
+	if len(p.Also) > 0 {
+		return fmt.Errorf("several channels: %s works on one: %w", m.Name(), ErrUnsupported)
+	}
 	return nil
 }
 

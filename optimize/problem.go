@@ -15,6 +15,10 @@ import (
 type Problem struct {
 	// Channel is the family of channels; required.
 	Channel channel.Family
+	// Also lists further families on which the ensemble must work: that with
+	// the worst gap to capacity, in rate, counts. Only QuantizedDesign
+	// supports them.
+	Also []channel.Family
 	// Rate is the design rate in information bits per code bit, strictly
 	// between 0 and 1. The ensemble found has this rate up to rounding.
 	Rate float64
@@ -46,9 +50,24 @@ type Limits struct {
 	// λ₂ρ'(1)·B ≤ 1-StabilityMargin with the Bhattacharyya parameter B of the
 	// channel at the threshold; from 0 to below 1.
 	StabilityMargin float64
-	// Iterations is the number of iterations within which decoding must
-	// succeed; 0 for no limit. BECDesign and GaussianDesign do not support it.
+	// Iterations is the number of iterations within which the bit error
+	// probability must fall to TargetError; 0 for no limit. Only
+	// QuantizedDesign supports it.
 	Iterations int
+	// TargetError is the bit error probability to reach within Iterations;
+	// 0 for DefaultTargetError.
+	TargetError float64
+}
+
+// DefaultTargetError is the bit error probability that a decoder with a limited
+// number of iterations must reach if nothing is said.
+const DefaultTargetError = 1e-6
+
+func (p Problem) targetError() float64 {
+	if p.Limits.TargetError == 0 {
+		return DefaultTargetError
+	}
+	return p.Limits.TargetError
 }
 
 // DegreesUpTo returns the degrees from 2 to largest.
@@ -98,6 +117,8 @@ func (p Problem) sorted() (Problem, error) {
 		return p, fmt.Errorf("distinct degrees %d: must be positive, or 0 for no limit", l.DistinctDegrees)
 	case !(l.StabilityMargin >= 0 && l.StabilityMargin < 1):
 		return p, fmt.Errorf("stability margin %v: must be from 0 to below 1", l.StabilityMargin)
+	case !(l.TargetError >= 0 && l.TargetError < 0.5):
+		return p, fmt.Errorf("target error %v: must be from 0 to below 0.5", l.TargetError)
 	case l.Iterations < 0:
 		return p, fmt.Errorf("iterations %d: must be positive, or 0 for no limit", l.Iterations)
 	}

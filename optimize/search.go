@@ -6,6 +6,7 @@ import (
 	"fmt"
 	"time"
 
+	"tannery/de"
 	"tannery/ensembles"
 )
 
@@ -55,6 +56,9 @@ func Search(ctx context.Context, problem Problem, settings Settings) (Result, er
 		return Result{}, err
 	}
 	result.Limit = limit
+	if result.Thresholds == nil {
+		result.Thresholds = []de.Threshold{result.Threshold}
+	}
 	result.Stats = r.stats
 	switch {
 	case errors.Is(ctx.Err(), context.DeadlineExceeded):
@@ -69,7 +73,7 @@ func Search(ctx context.Context, problem Problem, settings Settings) (Result, er
 
 // DefaultMethod returns the method that fits the channel.
 func DefaultMethod(p Problem) (Method, error) {
-	for _, m := range []Method{BECDesign{}, GaussianDesign{}} {
+	for _, m := range []Method{BECDesign{}, QuantizedDesign{}} {
 		if m.check(Problem{Channel: p.Channel}) == nil {
 			return m, nil
 		}
@@ -96,6 +100,11 @@ type candidate struct {
 	degrees []int   // variable degrees that λ was chosen from
 	value   float64 // threshold as a channel parameter
 	optimum         // the linear programme's answer
+
+	// Of QuantizedDesign only.
+	gap     float64 // worst over the channels, in rate
+	polish  bool    // measured on the fine grid
+	binding []string
 }
 
 func (c *candidate) ensemble() ensembles.Ensemble {

@@ -40,6 +40,14 @@ type Settings struct {
 	Workers int
 	// Recorder is told how the search goes; nil for nobody.
 	Recorder Recorder
+	// Checkpoint is called, from the goroutine that called Search, with the
+	// state of the search after each piece of work; nil for nobody. Resume is
+	// such a state to continue from: the search then ends in the same result,
+	// to the bit, as one that was not interrupted. A state of another problem
+	// or seed is refused with ErrCheckpoint. The designs that end within
+	// seconds (BECDesign, GaussianDesign) have no state and start anew.
+	Checkpoint func(state []byte)
+	Resume     []byte
 }
 
 // Recorder is told how a search goes. Its methods are called one at a time,
@@ -96,6 +104,9 @@ type Result struct {
 	// Threshold is that of Ensemble, measured by the engine of the method and
 	// not taken from the search.
 	Threshold de.Threshold
+	// Thresholds are those on all channels of the problem, that of
+	// Problem.Channel first.
+	Thresholds []de.Threshold
 	// Limit is the Shannon limit at the rate, as a channel parameter.
 	Limit float64
 	// Certificate proves how much better any λ could be with the same ρ; nil

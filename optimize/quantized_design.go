@@ -1,0 +1,419 @@
+package optimize
+
+import (
+	"context"
+	"crypto/sha256"
+	"encoding/hex"
+	"encoding/json"
+	"errors"
+	"fmt"
+	"math"
+	"slices"
+
+	"tannery/de"
+	"tannery/de/channel"
+	"tannery/de/density"
+	"tannery/ensembles"
+)
+
+// QuantizedDesign searches on any channel, judged by density evolution with
+// quantised message densities. Starts from BEC designs are refined by
+// sequential linear programming over λ, ρ and the channel parameter, on a
+// coarse grid first (see refinement); where the number of distinct variable
+// degrees is limited, sets of degrees are searched; the best is refined on a
+// fine grid. The zero value works.
+type QuantizedDesign struct{}
+
+var _ Method = QuantizedDesign{}
+
+// Name returns "quantized design".
+func (QuantizedDesign) Name() string { return "quantized design" }
+
+func (QuantizedDesign) check(Problem) error { return nil }
+
+// The grids, and what settles a point on each: the gain of a round in rate.
+const (
+	coarsePoints, coarseTolerance, coarseGain = 128, 3e-6, 2e-6
+	finePoints, fineTolerance, fineGain       = 256, 1e-6, 1e-6
+)
+
+// journey is the state of a search: all that its continuation depends on, so
+// that it can be written down between rounds and taken up again.
+type journey struct {
+	Format   int    // journeyFormat
+	Problem  string // digest of the problem and the seed
+	Phase    phase
+	Points   []*point // to be refined in this phase
+	At       int      // the one in work
+	Best     *point   // of the phases before
+	Evolved  int      // evolutions so far
+	Solved   int      // linear programmes
+	Improved int      // exchanges made
+}
+
+// journeyFormat is the version of what is written down.
+const journeyFormat = 1
+
+// phase is a part of the search.
+type phase int
+
+const (
+	beginning phase = iota
+	refining        // the starts, on the coarse grid
+	dropping        // variable degrees, down to the number allowed
+	exchanging
+	freeing   // ρ, of the best
+	polishing // the best, on the fine grid
+	arrived
+)
+
+var phaseNames = map[phase]string{
+	beginning:  "designs for the BEC",
+	refining:   "two check degrees",
+	dropping:   "fewer distinct degrees",
+	exchanging: "exchange of degrees",
+	freeing:    "free check degrees",
+	polishing:  "refinement on the fine grid",
+}
+
+// phaseDone is the fraction of the work that is done before each phase.
+var phaseDone = map[phase]float64{refining: 0.05, dropping: 0.4, exchanging: 0.45, freeing: 0.6, polishing: 0.75, arrived: 1}
+
+// channels returns the channel of the problem and the others that count.
+func (p Problem) channels() []channel.Family {
+	return append([]channel.Family{p.Channel}, p.Also...)
+}
+
+// yardsticks returns one for each channel, on a grid.
+func (p Problem) yardsticks(points int) ([]yardstick, error) {
+	grid, err := density.NewGrid(points)
+	if err != nil {
+		return nil, err
+	}
+	var by []yardstick
+	for _, f := range p.channels() {
+		if n := p.Limits.Iterations; n > 0 {
+			by = append(by, deadlineYardstick{f, grid, n, p.targetError()})
+		} else {
+			by = append(by, tunnelYardstick{f, grid})
+		}
+	}
+	return by, nil
+}
+
+func (q QuantizedDesign) search(ctx context.Context, p Problem, r *run) error {
+	j := &journey{Format: journeyFormat, Problem: p.digest(r.settings.Seed)}
+	if saved := r.settings.Resume; saved != nil {
+		if err := j.restore(saved); err != nil {
+			return err
+		}
+		r.stats.Evaluations, r.stats.Programmes = j.Evolved, j.Solved
+		j.adopt(p, r, j.Best)
+		for _, at := range j.Points {
+			j.adopt(p, r, at)
+		}
+	}
+	for j.Phase != arrived {
+		r.enter(phaseNames[j.Phase])
+		if err := j.advance(ctx, p, r); err != nil {
+			return err
+		}
+		if ctx.Err() != nil || r.spent() {
+			return nil
+		}
+	}
+	return nil
+}
+
+// restore reads what was written down.
+func (j *journey) restore(saved []byte) error {
+	var old journey
+	if err := json.Unmarshal(saved, &old); err != nil {
+		return fmt.Errorf("%w: %v", ErrCheckpoint, err)
+	}
+	switch {
+	case old.Format != j.Format:
+		return fmt.Errorf("%w: format %d: must be %d", ErrCheckpoint, old.Format, j.Format)
+	case old.Problem != j.Problem:
+		return fmt.Errorf("%w: it belongs to another problem or seed", ErrCheckpoint)
+	case old.Phase < beginning || old.Phase > arrived || old.At < 0 || old.At > len(old.Points):
+		return fmt.Errorf("%w: phase %d, point %d of %d", ErrCheckpoint, old.Phase, old.At, len(old.Points))
+	}
+	*j = old
+	return nil
+}
+
+// ErrCheckpoint is wrapped by the errors that refuse a checkpoint.
+var ErrCheckpoint = errors.New("checkpoint cannot be resumed")
+
+// digest identifies a problem and a seed.
+func (p Problem) digest(seed uint64) string {
+	h := sha256.New()
+	fmt.Fprintln(h, seed, p.Rate, p.VariableDegrees, p.CheckDegrees, p.Limits)
+	for _, f := range p.channels() {
+		fmt.Fprintln(h, f.Name(), f.Parameter())
+		for _, rate := range []float64{p.Rate, p.Rate / 2, (1 + p.Rate) / 2} {
+			parameter, err := f.Inverse(rate)
+			fmt.Fprintln(h, parameter, err)
+		}
+	}
+	return hex.EncodeToString(h.Sum(nil))
+}
+
+// advance does one piece of work: a round of one point, or the passage to the
+// next phase.
+func (j *journey) advance(ctx context.Context, p Problem, r *run) error {
+	if j.Phase == beginning {
+		first, err := starts(ctx, p)
+		if err != nil {
+			return err
+		}
+		for _, e := range first {
+			j.Points = append(j.Points, &point{Ensemble: e, Degrees: p.VariableDegrees, Radius: startRadius})
+		}
+		j.enter(refining, r)
+		return nil
+	}
+	if j.At < len(j.Points) {
+		return j.round(ctx, p, r)
+	}
+	best := j.bestPoint()
+	switch j.Phase {
+	case refining:
+		if best == nil {
+			return fmt.Errorf("rate %v: none of the starts could be measured: %w", p.Rate, ErrUnreachable)
+		}
+		j.Best = best
+		j.choose(ctx, p, r)
+	case dropping:
+		if best == nil {
+			return fmt.Errorf("%d distinct variable degrees: %w", p.Limits.DistinctDegrees, ErrUnreachable)
+		}
+		j.Best = best
+		j.choose(ctx, p, r)
+	case exchanging:
+		if best != nil && best.Gap < j.Best.Gap-coarseGain && j.Improved < exchangeCap {
+			j.Best = best
+			j.Improved++
+			j.choose(ctx, p, r)
+			break
+		}
+		j.again(freeing, r)
+	case freeing:
+		j.Best = best
+		j.again(polishing, r)
+	case polishing:
+		if best != nil {
+			j.Best = best
+		}
+		j.enter(arrived, r)
+	}
+	return nil
+}
+
+// exchangeCap bounds the exchanges of degrees.
+const exchangeCap = 12
+
+// choose sets up the points of the phase that follows: sets with a degree
+// less, sets with a degree exchanged, or the best on the fine grid.
+func (j *journey) choose(ctx context.Context, p Problem, r *run) {
+	limit := p.Limits.DistinctDegrees
+	used := degreesOf(j.Best.Ensemble.Lambda)
+	var sets [][]int
+	next := exchanging
+	switch {
+	case limit == 0:
+		j.again(freeing, r)
+		return
+	case len(used) > limit:
+		next = dropping
+		for i := range used {
+			sets = append(sets, slices.Delete(slices.Clone(used), i, i+1))
+		}
+	default:
+		sets = exchanges(p.VariableDegrees, used)
+	}
+	designs := newErasureDesigner(onBEC(p))
+	j.Points = nil
+	for _, set := range sets {
+		c, err := designs.best(ctx, j.Best.Ensemble.Rho, set, nil)
+		if err != nil {
+			continue
+		}
+		j.Points = append(j.Points, &point{Ensemble: c.ensemble(), Degrees: set, Radius: startRadius})
+	}
+	j.enter(next, r)
+}
+
+// again sets up a phase in which the best is refined further.
+func (j *journey) again(next phase, r *run) {
+	b := *j.Best
+	b.readings, b.Settled, b.Rounds, b.Tolerance = nil, false, 0, 0
+	b.Radius = startRadius / 2
+	b.Guess, b.Distance = slices.Clone(b.Thresholds), nil
+	for _, t := range b.Thresholds {
+		b.Distance = append(b.Distance, startBelow*t)
+	}
+	j.Points = []*point{&b}
+	j.enter(next, r)
+}
+
+func (j *journey) enter(next phase, r *run) {
+	j.Phase, j.At = next, 0
+	j.report(r)
+	j.keep(r)
+}
+
+// round refines the point in work by one round, and passes on to the next when
+// it has settled or cannot be measured.
+func (j *journey) round(ctx context.Context, p Problem, r *run) error {
+	points, tolerance, gain := coarsePoints, coarseTolerance, coarseGain
+	if j.Phase == polishing {
+		points, tolerance, gain = finePoints, fineTolerance, fineGain
+	}
+	by, err := p.yardsticks(points)
+	if err != nil {
+		return err
+	}
+	f := refinement{
+		problem:   p,
+		by:        by,
+		workers:   r.settings.Workers,
+		gain:      gain,
+		tolerance: tolerance,
+		free:      j.Phase >= freeing,
+	}
+	at := *j.Points[j.At]
+	err = f.round(ctx, &at)
+	if ctx.Err() != nil {
+		return nil
+	}
+	j.Evolved += f.evaluations
+	j.Solved += f.programmes
+	r.stats.Evaluations, r.stats.Programmes = j.Evolved, j.Solved
+	switch {
+	case errors.Is(err, errNoTunnel):
+		at.Settled = true
+	case err != nil:
+		return err
+	}
+	j.Points[j.At] = &at
+	j.adopt(p, r, &at)
+	if at.Settled || j.hopeless(&at) {
+		j.At++
+	}
+	j.report(r)
+	j.keep(r)
+	return nil
+}
+
+// adopt makes a measured point the best so far if it is. What was measured on
+// the fine grid comes before what was not, from which it was made.
+func (j *journey) adopt(p Problem, r *run, at *point) {
+	if at == nil || at.Thresholds == nil {
+		return
+	}
+	c := &candidate{
+		rho:     at.Ensemble.Rho,
+		degrees: at.Degrees,
+		value:   at.Thresholds[0],
+		optimum: optimum{lambda: at.Ensemble.Lambda},
+		gap:     at.Gap,
+		polish:  j.Phase == polishing && at != j.Best,
+		binding: at.Binding,
+	}
+	old := r.best
+	switch {
+	case p.Limits.DistinctDegrees > 0 && len(c.lambda) > p.Limits.DistinctDegrees:
+	case old == nil, c.polish && !old.polish, c.polish == old.polish && c.gap < old.gap:
+		r.best = c
+		if r.settings.Recorder != nil {
+			r.settings.Recorder.Improved(Improvement{c.ensemble(), c.value, r.stats.Evaluations})
+		}
+	}
+}
+
+// trialRounds is after how many rounds a point must be on its way to beating
+// the best: a start must have a smaller gap than the starts before it, for
+// starts that end in the same optimum are the rule, and a set of degrees must
+// come within a factor trialHope.
+const (
+	trialRounds = 3
+	trialHope   = 1.02
+)
+
+// hopeless tells whether a point may be given up.
+func (j *journey) hopeless(at *point) bool {
+	if at.Rounds < trialRounds {
+		return false
+	}
+	switch j.Phase {
+	case refining:
+		for _, earlier := range j.Points[:j.At] {
+			if earlier.Thresholds != nil && at.Gap > earlier.Gap-coarseGain {
+				return true
+			}
+		}
+	case exchanging:
+		return at.Gap > j.Best.Gap*trialHope
+	}
+	return false
+}
+
+// bestPoint returns the measured point of this phase with the least gap.
+func (j *journey) bestPoint() *point {
+	var best *point
+	for _, at := range j.Points {
+		if at.Thresholds != nil && (best == nil || at.Gap < best.Gap) {
+			best = at
+		}
+	}
+	return best
+}
+
+func (j *journey) report(r *run) {
+	from, to := phaseDone[j.Phase], 1.
+	for next := j.Phase + 1; next <= arrived; next++ {
+		if done, ok := phaseDone[next]; ok {
+			to = done
+			break
+		}
+	}
+	r.report(from + (to-from)*float64(j.At)/math.Max(1, float64(len(j.Points))))
+}
+
+// keep hands out the state to be written down.
+func (j *journey) keep(r *run) {
+	if r.settings.Checkpoint == nil {
+		return
+	}
+	state, err := json.Marshal(j)
+	if err != nil {
+		panic("optimize: state of a search cannot be written: " + err.Error())
+	}
+	r.settings.Checkpoint(state)
+}
+
+// finish measures the best by the engine.
+func (QuantizedDesign) finish(p Problem, r *run) (Result, error) {
+	best := r.best.ensemble()
+	out := Result{Ensemble: best, Binding: r.best.binding}
+	for _, f := range p.channels() {
+		t, err := p.measure(best, f)
+		if err != nil {
+			return Result{}, err
+		}
+		out.Thresholds = append(out.Thresholds, t)
+	}
+	out.Threshold = out.Thresholds[0]
+	return out, nil
+}
+
+// measure finds the threshold, within the iterations allowed.
+func (p Problem) measure(e ensembles.Ensemble, f channel.Family) (de.Threshold, error) {
+	ctx := context.Background() // the budget is spent, but the best must be made whole
+	if p.Limits.Iterations > 0 {
+		return de.Limited(ctx, de.QuantizedEngine{}, e, f, p.Limits.Iterations, p.targetError())
+	}
+	return de.QuantizedEngine{}.Threshold(ctx, e, f)
+}
