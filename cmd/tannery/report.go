@@ -39,7 +39,7 @@ type reportOptions struct {
 func newReport() *cobra.Command {
 	o := &reportOptions{
 		frameError: numberOption{allow: document.Between(0, 1), value: 1e-4},
-		neighbours: integerOption{low: 0, high: 100, value: 8},
+		neighbours: integerOption{low: 0, high: 100, value: 6},
 	}
 	cmd := &cobra.Command{
 		Use:   "report PROFILE [options]",
@@ -50,7 +50,7 @@ tannery report harbour.yaml -o harbour.html
 tannery report rsu01-r50-d4 --method gaussian --length 2048 --length 16384 \
     -o rsu.html
 # with the tunnel at the noise of the link
-tannery report harbour.yaml --es-n0 0.6 -o link.html`,
+tannery report harbour.yaml --es-n0 0.6 --neighbours 3 -o link.html`,
 		Long: `The file needs nothing else: no network, no scripts, pictures within. It
 prints on A4 and follows the reader's choice of light or dark.
 
@@ -73,7 +73,7 @@ Without -o the page goes to standard output.`,
 	cmd.Flags().Var(&o.lengths, "length", "code bits to give node counts for; may be given several times")
 	cmd.Flags().Var(&o.frameError, "frame-error", "frame error rate for the limit at those lengths; 1e-4 if not given")
 	cmd.Flags().StringArrayVar(&o.simulations, "simulation", nil, "`FILE` with measured error rates, the JSON of simulate; may be given several times")
-	cmd.Flags().Var(&o.neighbours, "neighbours", "ensembles of the catalogue to compare with, 0 for none; 8 if not given")
+	cmd.Flags().Var(&o.neighbours, "neighbours", "ensembles of the catalogue to compare with, 0 for none; 6 if not given")
 	cmd.Flags().StringVarP(&o.output, "output", "o", "", "`FILE` for the page, or - for standard output")
 	return cmd
 }

@@ -16,9 +16,10 @@ func newRoot() *cobra.Command {
 		Long: `An engineer has a channel, an information rate and a decoder with limits.
 tannery finds what rate the channel allows (limit), the degree profile whose
 decoding threshold lies closest to the Shannon limit under the decoder's limits
-(search), how far any profile is from that limit and why (threshold, trace), and
-the same profile as exact integer node counts for whoever constructs the
-parity-check matrix (export).
+(search), how far any profile is from that limit and why (threshold, trace), how
+it stands beside published ones (compare, catalog), and the same profile as
+exact integer node counts for whoever constructs the parity-check matrix
+(export). One page tells colleagues about it (report).
 
 Answers go to standard output, everything else to standard error. Exit codes:
 0 done; 1 failed; 2 wrong usage or invalid input; 3 finished, but what was asked
@@ -47,7 +48,7 @@ tannery export link.yaml --length 64800 -o link-64800.yaml`,
 			return usagef("%s: unknown command%s; tannery --help lists them", args[0], suggestion(args[0], names))
 		},
 		RunE: func(cmd *cobra.Command, _ []string) error {
-			printHelp(cmd, nil)
+			printWelcome(cmd)
 			return nil
 		},
 	}

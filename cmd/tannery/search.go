@@ -31,7 +31,7 @@ tannery search --channel biawgn --rate 0.5 --max-variable-degree 15
 # on the erasure channel, proven best for its check degrees, into a file
 tannery search --channel bec --rate 0.5 --max-variable-degree 20 -o best.yaml
 # what a brief asks for, but with fewer edges
-tannery search harbour.yaml --max-edges-per-bit 3.3 -o link.yaml
+tannery search harbour.yaml --max-edges-per-bit 3.8 -o link.yaml
 # the degrees that the hardware has
 tannery search --channel biawgn --rate 0.5 --variable-degrees 2,3,4,8 \
     --check-degrees 6,7
