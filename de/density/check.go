@@ -1,6 +1,7 @@
 package density
 
 import (
+	"math"
 	"unsafe"
 
 	"tannery/ensembles"
@@ -34,7 +35,18 @@ func (c *CheckNode) Apply(dst, src *Density) {
 	var known float64 // mass of the u that the coarsest level answers for
 	work := complexView(c.cells)
 	clear(dst.even)
-	for l, v := range c.grid.levels {
+	// A sum below a level's range has all its terms there, so that no more
+	// mass can come of it than ρ of the mass there, all counted positive.
+	node, inRange := len(src.even), math.Abs(src.infinite)
+	for l := len(c.grid.levels) - 1; l >= 0; l-- {
+		v := c.grid.levels[l]
+		for node > v.fromNode {
+			node--
+			inRange += math.Abs(src.even[node]) * c.grid.bulge[node]
+		}
+		if l > 0 && c.polynomial.at(inRange) < negligible {
+			continue
+		}
 		v.spread(c.cells, src.even, src.infinite)
 		v.fft.forward(work)
 		v.apply(work, c.polynomial)
@@ -54,6 +66,10 @@ func (c *CheckNode) Apply(dst, src *Density) {
 	dst.even[0] += erased
 	dst.settle()
 }
+
+// negligible is the mass below which a level is left out. Its messages, all
+// of them reliable, then count as certain.
+const negligible = 1e-13
 
 // roundingLoss is the largest mass that rounding under the damping factor may
 // lose on the coarsest level; a smaller loss does not count as erased.

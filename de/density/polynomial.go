@@ -45,16 +45,20 @@ func (p polynomial) at(z float64) float64 {
 func (p polynomial) atPair(y, z complex128) (complex128, complex128) {
 	powerY, powerZ := complex(1, 0), complex(1, 0)
 	var re0, im0, re1, im1 float64
-	for _, t := range p {
+	for i, t := range p {
 		squareY, squareZ := y, z
-		for gap := t.gap; gap != 0; {
+		gap := t.gap
+		if i == 0 && gap&1 != 0 {
+			powerY, powerZ = y, z
+			gap--
+		}
+		for ; gap != 0; gap >>= 1 {
 			if gap&1 != 0 {
 				powerY *= squareY
 				powerZ *= squareZ
 			}
-			if gap >>= 1; gap != 0 {
-				squareY *= squareY
-				squareZ *= squareZ
+			if gap > 1 {
+				squareY, squareZ = square(squareY), square(squareZ)
 			}
 		}
 		re0 += t.weight * real(powerY)
@@ -63,4 +67,9 @@ func (p polynomial) atPair(y, z complex128) (complex128, complex128) {
 		im1 += t.weight * imag(powerZ)
 	}
 	return complex(re0, im0), complex(re1, im1)
+}
+
+// square returns z² with one multiplication less than z·z.
+func square(z complex128) complex128 {
+	return complex((real(z)-imag(z))*(real(z)+imag(z)), 2*real(z)*imag(z))
 }
