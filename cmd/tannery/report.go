@@ -50,7 +50,7 @@ tannery report harbour.yaml -o harbour.html
 tannery report rsu01-r50-d4 --method gaussian --length 2048 --length 16384 \
     -o rsu.html
 # with the tunnel at the noise of the link
-tannery report harbour.yaml --es-n0 0.6 --neighbours 3 -o link.html`,
+tannery report harbour.yaml --method gaussian --es-n0 0.6 -o link.html`,
 		Long: `The file needs nothing else: no network, no scripts, pictures within. It
 prints on A4 and follows the reader's choice of light or dark.
 
