@@ -33,18 +33,18 @@ func (o *reportOptions) marks(page *report.Page, f channel.Family, simulations [
 			continue
 		}
 		add := func(name string, value float64) {
-			ebN0, _ := ratios(f, value, s.Rate)
+			ebN0, _ := ratios(f, value, s.DesignRate)
 			marks[s.Name] = append(marks[s.Name], report.MarkValue{Name: name, Value: value, EbN0DB: ebN0})
 		}
-		if s.Rate > 0 && s.Rate < 1 {
-			if limit, err := f.Inverse(s.Rate); err == nil {
+		if s.DesignRate > 0 && s.DesignRate < 1 {
+			if limit, err := f.Inverse(s.DesignRate); err == nil {
 				add("Shannon limit", limit)
 			}
 		}
 		if page.Threshold.Gap != nil {
 			add("threshold", page.Threshold.Threshold)
 		}
-		if limit := finiteLimit(f, s.Rate, s.Length, o.frameError.value); limit != nil {
+		if limit := finiteLimit(f, s.DesignRate, s.Length, o.frameError.value); limit != nil {
 			add("finite-length limit at frame error rate "+report.Plain(o.frameError.value), *limit)
 		}
 	}

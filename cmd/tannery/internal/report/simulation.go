@@ -2,29 +2,35 @@ package report
 
 import (
 	"encoding/json"
+	"errors"
 	"fmt"
 	"slices"
 
 	"tannery/cmd/tannery/internal/report/picture"
+	"tannery/de/channel"
 )
 
+// SimulationSchema names the form of measured curves.
+const SimulationSchema = "tannery/simulate/1"
+
 // Simulation is a measured curve: error rates of one matrix at several channel
-// parameters.
+// parameters. Further keys of the file are of no concern here.
 type Simulation struct {
-	Name       string            `json:"name"` // of its file
+	Schema     string            `json:"schema"`
 	Channel    string            `json:"channel"`
-	Parameter  string            `json:"parameter"`
-	Length     int               `json:"length"`
-	Rate       float64           `json:"rate"`
+	Parameter  string            `json:"parameter"` // key of the family's parameter
+	Length     int               `json:"length"`    // code bits
+	DesignRate float64           `json:"design_rate"`
 	Confidence float64           `json:"confidence"` // of the intervals, such as 0.95
 	Points     []SimulationPoint `json:"points"`
 
+	Name   string `json:"-"` // of the file
 	Symbol string `json:"-"`
 }
 
 // SimulationPoint is what was measured at one parameter.
 type SimulationPoint struct {
-	Value  float64      `json:"value"`
+	Value  float64      `json:"value"` // of the parameter
 	EbN0DB *float64     `json:"eb_n0_db"`
 	Frames int          `json:"frames"`
 	Frame  MeasuredRate `json:"frame_error_rate"`
@@ -33,9 +39,9 @@ type SimulationPoint struct {
 
 // MeasuredRate is a rate with the ends of its confidence interval.
 type MeasuredRate struct {
-	Rate float64 `json:"rate"`
-	Low  float64 `json:"low"`
-	High float64 `json:"high"`
+	Value float64 `json:"value"`
+	Low   float64 `json:"low"`
+	High  float64 `json:"high"`
 }
 
 // ConfidencePercent is the confidence for the caption.
@@ -53,7 +59,7 @@ type SimulationCells struct{ Value, EbN0, Frames, FrameRate, BitRate string }
 func (s Simulation) Cells() []SimulationCells {
 	rows := make([]SimulationCells, len(s.Points))
 	for i, p := range s.Points {
-		rows[i] = SimulationCells{Value: Significant(p.Value, 5), Frames: grouped(p.Frames), FrameRate: p.Frame.text(), BitRate: p.Bit.text()}
+		rows[i] = SimulationCells{Value: short(p.Value), Frames: grouped(p.Frames), FrameRate: p.Frame.text(), BitRate: p.Bit.text()}
 		if s.HasDB() {
 			rows[i].EbN0 = Fixed(*p.EbN0DB, 3)
 		}
@@ -62,7 +68,7 @@ func (s Simulation) Cells() []SimulationCells {
 }
 
 func (m MeasuredRate) text() string {
-	return fmt.Sprintf("%s (%s to %s)", Significant(m.Rate, 3), Significant(m.Low, 2), Significant(m.High, 2))
+	return fmt.Sprintf("%s (%s to %s)", Significant(m.Value, 3), Significant(m.Low, 2), Significant(m.High, 2))
 }
 
 // Picture draws the curves beside the limits that the page knows.
@@ -92,7 +98,7 @@ func (s Simulation) Picture(p *Page) picture.Picture {
 	})
 	for _, q := range points {
 		for i, m := range []MeasuredRate{q.Frame, q.Bit} {
-			c.Series[i].Points = append(c.Series[i].Points, picture.CurvePoint{X: at(q), Rate: m.Rate, Low: m.Low, High: m.High})
+			c.Series[i].Points = append(c.Series[i].Points, picture.CurvePoint{X: at(q), Rate: m.Value, Low: m.Low, High: m.High})
 		}
 	}
 	for _, l := range p.limits(s, inDB) {
@@ -132,11 +138,50 @@ type MarkValue struct {
 	EbN0DB *float64
 }
 
-// DecodeSimulation reads the JSON answer of the command simulate.
+// DecodeSimulation reads the JSON answer of the command simulate; name stands
+// for the file in errors.
 func DecodeSimulation(name string, content []byte) (Simulation, error) {
 	var s Simulation
 	if err := json.Unmarshal(content, &s); err != nil {
-		return s, fmt.Errorf("%s: found no JSON answer of simulate: %w", name, err)
+		return s, fmt.Errorf("%s: found no JSON object of measured error rates: %w", name, err)
 	}
-	return s, nil
+	if s.Schema != SimulationSchema {
+		return s, fmt.Errorf("%s: schema: found %q; allowed: %s", name, s.Schema, SimulationSchema)
+	}
+	f, err := channel.ByName(s.Channel)
+	if err != nil {
+		return s, fmt.Errorf("%s: %w", name, err)
+	}
+	s.Symbol = f.Symbol()
+	var errs []error
+	refuse := func(key string, found any, allowed string) {
+		errs = append(errs, fmt.Errorf("%s: %s: found %v; allowed: %s", name, key, found, allowed))
+	}
+	if s.Length < 1 {
+		refuse("length", s.Length, "a whole number of at least 1")
+	}
+	if !(s.DesignRate < 1) {
+		refuse("design_rate", s.DesignRate, "a number below 1")
+	}
+	if !(s.Confidence > 0 && s.Confidence < 1) {
+		refuse("confidence", s.Confidence, "a number above 0 and below 1")
+	}
+	if len(s.Points) == 0 {
+		refuse("points", "none", "at least one")
+	}
+	for i, p := range s.Points {
+		if p.Frames < 1 {
+			refuse(fmt.Sprintf("points[%d].frames", i), p.Frames, "a whole number of at least 1")
+		}
+		for _, r := range []struct {
+			key string
+			m   MeasuredRate
+		}{{"frame_error_rate", p.Frame}, {"bit_error_rate", p.Bit}} {
+			key, m := r.key, r.m
+			if !(0 <= m.Low && m.Low <= m.Value && m.Value <= m.High && m.High <= 1) {
+				refuse(fmt.Sprintf("points[%d].%s", i, key), fmt.Sprintf("%v in %v to %v", m.Value, m.Low, m.High), "a rate from 0 to 1 within its interval")
+			}
+		}
+	}
+	return s, errors.Join(errs...)
 }
