@@ -118,7 +118,13 @@ func runReport(cmd *cobra.Command, args []string, o *reportOptions) error {
 		return err
 	}
 	page.Simulations = simulations
-	page.Marks = o.marks(page, f, simulations)
+	var threshold *float64
+	if page.Threshold.Gap != nil {
+		threshold = &page.Threshold.Threshold
+	}
+	for _, s := range simulations {
+		page.Marks = append(page.Marks, simulationMarks(s, f, threshold, o.frameError.value))
+	}
 	page.Provenance.Command = o.again(cmd, args, f, engine)
 	if file == nil && asJSON(cmd) {
 		return deliver(cmd, page)

@@ -25,28 +25,26 @@ func (o *reportOptions) readSimulations(cmd *cobra.Command) ([]report.Simulation
 	return simulations, nil
 }
 
-// marks are the limits to draw beside measured curves.
-func (o *reportOptions) marks(page *report.Page, f channel.Family, simulations []report.Simulation) map[string][]report.MarkValue {
-	marks := map[string][]report.MarkValue{}
-	for _, s := range simulations {
-		if s.Channel != f.Name() {
-			continue
-		}
-		add := func(name string, value float64) {
-			ebN0, _ := ratios(f, value, s.DesignRate)
-			marks[s.Name] = append(marks[s.Name], report.MarkValue{Name: name, Value: value, EbN0DB: ebN0})
-		}
-		if s.DesignRate > 0 && s.DesignRate < 1 {
-			if limit, err := f.Inverse(s.DesignRate); err == nil {
-				add("Shannon limit", limit)
-			}
-		}
-		if page.Threshold.Gap != nil {
-			add("threshold", page.Threshold.Threshold)
-		}
-		if limit := finiteLimit(f, s.DesignRate, s.Length, o.frameError.value); limit != nil {
-			add("finite-length limit at frame error rate "+report.Plain(o.frameError.value), *limit)
-		}
+// simulationMarks are the limits to draw beside measured curves: the Shannon
+// limit at their rate, the threshold if there is one, and the limit for any
+// code of their length at the frame error rate.
+func simulationMarks(s report.Simulation, f channel.Family, threshold *float64, frameError float64) []report.MarkValue {
+	marks := []report.MarkValue{}
+	if s.Channel != f.Name() {
+		return marks
+	}
+	add := func(name string, value float64) {
+		ebN0, _ := ratios(f, value, s.DesignRate)
+		marks = append(marks, report.MarkValue{Name: name, Value: value, EbN0DB: ebN0})
+	}
+	if limit, err := f.Inverse(s.DesignRate); err == nil {
+		add("Shannon limit", limit)
+	}
+	if threshold != nil {
+		add("threshold", *threshold)
+	}
+	if limit := finiteLimit(f, s.DesignRate, s.Length, frameError); limit != nil {
+		add("finite-length limit at frame error rate "+report.Plain(frameError), *limit)
 	}
 	return marks
 }

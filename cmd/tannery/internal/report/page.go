@@ -31,9 +31,9 @@ type Page struct {
 	Simulations  []Simulation   `json:"simulations"`
 	Provenance   PageProvenance `json:"provenance"`
 
-	File     string                 `json:"-"`
-	Ensemble ensembles.Ensemble     `json:"-"`
-	Marks    map[string][]MarkValue `json:"-"` // limits beside simulations, by their names
+	File     string             `json:"-"`
+	Ensemble ensembles.Ensemble `json:"-"`
+	Marks    [][]MarkValue      `json:"-"` // limits beside each of the simulations
 }
 
 // Asked is one line of a brief.
@@ -206,7 +206,7 @@ func (p *Page) view() (*pageView, error) {
 		}
 	}
 	for i, s := range p.Simulations {
-		drawing := s.Picture(p)
+		drawing := s.Picture(p.Marks[i])
 		v.Results = append(v.Results, resultView{s, draw("simulation-"+strconv.Itoa(i+1), "Measured error rates with their confidence intervals, beside the limits.", drawing)})
 	}
 	v.Facts = p.facts()

@@ -71,8 +71,8 @@ func (m MeasuredRate) text() string {
 	return fmt.Sprintf("%s (%s to %s)", Significant(m.Value, 3), Significant(m.Low, 2), Significant(m.High, 2))
 }
 
-// Picture draws the curves beside the limits that the page knows.
-func (s Simulation) Picture(p *Page) picture.Picture {
+// Picture draws the curves beside limits such as the threshold.
+func (s Simulation) Picture(marks []MarkValue) picture.Picture {
 	inDB := s.HasDB()
 	c := picture.Curves{
 		Subject:    fmt.Sprintf("%s: %s code bits on %s", s.Name, grouped(s.Length), s.Channel),
@@ -101,33 +101,14 @@ func (s Simulation) Picture(p *Page) picture.Picture {
 			c.Series[i].Points = append(c.Series[i].Points, picture.CurvePoint{X: at(q), Rate: m.Value, Low: m.Low, High: m.High})
 		}
 	}
-	for _, l := range p.limits(s, inDB) {
-		c.Limits = append(c.Limits, picture.CurveLimit(l))
-	}
-	return c.Picture()
-}
-
-// Mark is a limit on the axis of a simulation.
-type Mark struct {
-	Name string
-	X    float64
-}
-
-// limits returns the Shannon limit, the threshold, and where it is known the
-// limit at the length of the simulation.
-func (p *Page) limits(s Simulation, inDB bool) []Mark {
-	if s.Channel != p.Threshold.Channel {
-		return nil
-	}
-	var marks []Mark
-	for _, m := range p.Marks[s.Name] {
+	for _, m := range marks {
 		if inDB && m.EbN0DB != nil {
-			marks = append(marks, Mark{m.Name, *m.EbN0DB})
+			c.Limits = append(c.Limits, picture.CurveLimit{Name: m.Name, X: *m.EbN0DB})
 		} else if !inDB {
-			marks = append(marks, Mark{m.Name, m.Value})
+			c.Limits = append(c.Limits, picture.CurveLimit{Name: m.Name, X: m.Value})
 		}
 	}
-	return marks
+	return c.Picture()
 }
 
 // MarkValue is a limit as a channel parameter, and in dB at the rate of the
