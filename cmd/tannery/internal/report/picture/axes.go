@@ -11,11 +11,11 @@ import (
 	"gonum.org/v1/plot/vg/draw"
 )
 
-// linear marks an axis at round steps, about six of them.
+// linear marks an axis at round steps, at most seven of them.
 type linear struct{}
 
-// wantedSteps is the number of labelled steps that an axis has room for.
-const wantedSteps = 6
+// wantedSteps is the most steps that an axis has room for, with their labels.
+const wantedSteps = 7
 
 // Ticks implements plot.Ticker.
 func (linear) Ticks(low, high float64) []plot.Tick {
