@@ -54,8 +54,8 @@ const (
 	// fairEstimate is how far an estimate may be off, in tolerances, for
 	// transfer to build on it, and transferGain by how much the difference
 	// of two grids in it is smaller than itself.
-	fairEstimate = 32
-	transferGain = 64
+	fairEstimate = 8
+	transferGain = 8
 	// runCap ends an approach that does not settle.
 	runCap = 60
 )
