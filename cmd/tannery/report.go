@@ -159,6 +159,7 @@ func (o *reportOptions) page(ctx context.Context, name string, p ensembles.Profi
 		page.Trace.Name = name
 	}
 	page.Answer = report.AnswerOf(name, page.Threshold)
+	page.Provenance.Settings = o.settings(m, page.Trace)
 	if page.Brief, err = briefLines(p.Provenance.Brief); err != nil {
 		return nil, err
 	}
@@ -266,12 +267,24 @@ func provenanceOf(p ensembles.Profile) report.PageProvenance {
 		Created:        now().Format("2006-01-02 15:04:05 MST"),
 		ProfileProgram: p.Provenance.Program,
 		Seed:           p.Provenance.Seed,
-		Settings:       []report.Asked{},
 	}
 	if !p.Provenance.Created.IsZero() {
 		v.ProfileCreated = p.Provenance.Created.Format(time.RFC3339)
 	}
 	return v
+}
+
+// settings are what the figures of the page depend on beside the profile.
+func (o *reportOptions) settings(m meter, trace *report.Trace) []report.Asked {
+	settings := []report.Asked{
+		{Key: "channel and method", Value: m.family.Name() + ", " + string(m.engine.Method())},
+		{Key: "frame error rate", Value: report.Plain(o.frameError.value) + ", for the limit at a length"},
+		{Key: "iterations", Value: fmt.Sprintf("to bit error probability %s, %s %% below a threshold", report.Plain(compareTarget), report.Plain(100*reportDistance))},
+	}
+	if trace != nil {
+		settings = append(settings, report.Asked{Key: "evolution shown at", Value: fmt.Sprintf("%s = %v, %d iterations at most", trace.Symbol, trace.Value, shownIterations)})
+	}
+	return settings
 }
 
 // again is the command line that makes the report again, whatever the
