@@ -297,10 +297,10 @@ func (o *reportOptions) again(cmd *cobra.Command, args []string, f channel.Famil
 		add("lambda", o.lambda.distribution.String())
 		add("rho", o.rho.distribution.String())
 	}
-	add("channel", f.Name())
+	add("channel", cmp.Or(o.channel.value, f.Name()))
 	add("method", string(engine.Method()))
-	for _, option := range []string{"parameter", "eb-n0", "es-n0"} {
-		if flag := cmd.Flags().Lookup(option); flag.Changed {
+	for _, option := range []string{"degradation", "parameter", "eb-n0", "es-n0"} {
+		if flag := cmd.Flags().Lookup(option); flag != nil && flag.Changed {
 			add(option, flag.Value.String())
 		}
 	}
