@@ -39,7 +39,7 @@ func TestBadInput(t *testing.T) {
 		{"no profile", "threshold --channel bec", "",
 			"profile: missing; allowed: a file, - for standard input, a name of the catalogue, or --lambda and --rho"},
 		{"no channel", "threshold --lambda 3:1 --rho 6:1", "",
-			"--channel: missing, and the profile's results do not name exactly one; allowed: bec, bsc, biawgn, laplace or rayleigh"},
+			"--channel: missing, and the profile's results do not name exactly one; allowed: bec, bsc, biawgn, laplace, rayleigh, or a file with . or / in its name"},
 		{"no file", "threshold none.yaml --channel bec", "",
 			"none.yaml: cannot be read: no such file or directory"},
 		{"no name", "threshold rsu01-r50-d16 --channel bec", "",

@@ -1,11 +1,15 @@
 package main
 
 import (
+	"errors"
 	"fmt"
 	"math"
+	"slices"
+	"strings"
 
 	"github.com/spf13/cobra"
 
+	"tannery/cmd/tannery/internal/brief"
 	"tannery/de/channel"
 	"tannery/ensembles"
 	"tannery/ensembles/document"
@@ -18,23 +22,93 @@ const maxDB = 100
 // parameterOptions say which channel is meant: its family and one parameter,
 // or a signal-to-noise ratio where that fixes it.
 type parameterOptions struct {
-	channel   nameOption
-	parameter numberOption
-	ebN0      numberOption
-	esN0      numberOption
+	channel     channelOption
+	degradation nameOption
+	parameter   numberOption
+	ebN0        numberOption
+	esN0        numberOption
+	reader      channelReader
 }
 
 func (o *parameterOptions) addChannel(cmd *cobra.Command, usage string) {
-	o.channel.names = channel.Names()
+	o.reader.cmd = cmd
 	cmd.Flags().Var(&o.channel, "channel", usage)
-	complete(cmd, "channel", o.channel.names)
+	completeChannel(cmd)
+	addDegradation(cmd, &o.degradation)
 }
+
+// completeChannel offers the names of channels and files to the shell.
+func completeChannel(cmd *cobra.Command) {
+	err := cmd.RegisterFlagCompletionFunc("channel", func(*cobra.Command, []string, string) ([]string, cobra.ShellCompDirective) {
+		return channel.Names(), cobra.ShellCompDirectiveDefault
+	})
+	if err != nil {
+		panic(fmt.Sprintf("completion of --channel: %v", err)) // an option that does not exist
+	}
+}
+
+func addDegradation(cmd *cobra.Command, o *nameOption) {
+	o.names = brief.Degradations
+	cmd.Flags().Var(o, "degradation", "what makes a channel from a file worse: erasure of more bits (parameter ε) or flip of more hard decisions (parameter p); erasure if not given")
+	complete(cmd, "degradation", o.names)
+}
+
+// channelFileHelp says, in the help of commands, how a channel from a file has
+// a threshold.
+const channelFileHelp = `A channel may be a file (a name with . or / in it): LLR values measured while
+zeros were sent, as CSV with the columns llr and mass or counts, or as YAML; or
+the transition matrix of a symmetric channel with two inputs. The channel as
+measured gets a parameter by --degradation: a share ε of its bits is erased on
+top, or a share p of its hard decisions is flipped. The threshold is the largest
+such share with which decoding succeeds.`
+
+// channelOption is the name of a channel, or a file.
+type channelOption struct{ value string }
+
+// Set implements pflag.Value.
+func (o *channelOption) Set(text string) error {
+	if !brief.IsFile(text) && !slices.Contains(channel.Names(), text) {
+		return errors.New(brief.ChannelsAllowed() + suggestion(text, channel.Names()))
+	}
+	o.value = text
+	return nil
+}
+
+// Type names the value in help texts.
+func (o *channelOption) Type() string { return "CHANNEL" }
+
+// String returns what was given.
+func (o *channelOption) String() string { return o.value }
+
+// channelsOption is a list of different channels.
+type channelsOption struct{ values []string }
+
+// Set reads the list; a second option adds to the first.
+func (o *channelsOption) Set(text string) error {
+	for item := range strings.SplitSeq(text, ",") {
+		var one channelOption
+		if err := one.Set(strings.TrimSpace(item)); err != nil {
+			return err
+		}
+		if slices.Contains(o.values, one.value) {
+			return fmt.Errorf("each channel once")
+		}
+		o.values = append(o.values, one.value)
+	}
+	return nil
+}
+
+// Type names the value in help texts.
+func (o *channelsOption) Type() string { return "CHANNEL,…" }
+
+// String returns what was given.
+func (o *channelsOption) String() string { return strings.Join(o.values, ",") }
 
 func (o *parameterOptions) addParameter(cmd *cobra.Command) {
 	o.parameter.allow = document.AtLeast(0)
 	o.ebN0.allow = document.FromTo(-maxDB, maxDB)
 	o.esN0.allow = o.ebN0.allow
-	cmd.Flags().Var(&o.parameter, "parameter", "channel parameter: ε of bec, p of bsc, σ of biawgn and rayleigh, scale b of laplace")
+	cmd.Flags().Var(&o.parameter, "parameter", "channel parameter: ε of bec, p of bsc, σ of biawgn and rayleigh, scale b of laplace; ε or p of a file")
 	cmd.Flags().Var(&o.ebN0, "eb-n0", "Eb/N0 in dB instead (biawgn; rayleigh: mean)")
 	cmd.Flags().Var(&o.esN0, "es-n0", "Es/N0 in dB instead (biawgn; rayleigh: mean)")
 }
@@ -42,9 +116,15 @@ func (o *parameterOptions) addParameter(cmd *cobra.Command) {
 // family returns the family asked for.
 func (o *parameterOptions) family() (channel.Family, error) {
 	if o.channel.value == "" {
-		return nil, usagef("--channel: missing; allowed: %s", listOf(o.channel.names))
+		return nil, usagef("--channel: missing; allowed: %s", brief.ChannelsAllowed())
 	}
-	f, err := channel.ByName(o.channel.value)
+	if !brief.IsFile(o.channel.value) && o.degradation.value != "" {
+		return nil, usagef("--degradation: found %s; allowed: nothing, because channel %s is not from a file", o.degradation.value, o.channel.value)
+	}
+	if args := o.reader.cmd.Flags().Args(); o.channel.value == "-" && slices.Contains(args, "-") {
+		return nil, usagef("-: standard input can be read once only")
+	}
+	f, err := o.reader.find(o.channel.value, o.degradation.value)
 	return f, invalid(err)
 }
 
@@ -148,11 +228,11 @@ func (o *parameterOptions) familyOf(p ensembles.Profile) (channel.Family, error)
 	}
 	name := channelOf(p)
 	if name == "" {
-		return nil, usagef("--channel: missing, and the profile's results do not name exactly one; allowed: %s", listOf(o.channel.names))
+		return nil, usagef("--channel: missing, and the profile's results do not name exactly one; allowed: %s", brief.ChannelsAllowed())
 	}
 	f, err := channel.ByName(name)
 	if err != nil {
-		return nil, usagef("results of the profile: %w", err)
+		return nil, usagef("--channel: missing, and the profile's results are for the channel %s; allowed: the file that it is from, or %s", name, listOf(channel.Names()))
 	}
 	return f, nil
 }

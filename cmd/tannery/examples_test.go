@@ -122,7 +122,7 @@ func stock(t *testing.T, c *cobra.Command, testdata string) {
 	if strings.Contains(c.Use, "BRIEF") {
 		harbour = "briefs/harbour.yaml"
 	}
-	for name, source := range map[string]string{"harbour.yaml": harbour, "buoy.csv": "channels/buoy.csv"} {
+	for name, source := range map[string]string{"harbour.yaml": harbour, "buoy.csv": "channels/buoy.csv", "receiver.csv": "channels/receiver.csv"} {
 		content, err := os.ReadFile(filepath.Join(testdata, source))
 		if err != nil {
 			t.Fatal(err)

@@ -1,6 +1,8 @@
 package main
 
 import (
+	"slices"
+
 	"github.com/spf13/cobra"
 
 	"tannery/cmd/tannery/internal/report"
@@ -46,6 +48,8 @@ tannery limit --channel biawgn --parameter 0.94 --source-rate 9600 \
     --source-probability 0.2 --symbol-rate 16000
 # at 2048 code bits and one lost frame in 10000
 tannery limit --channel biawgn --rate 0.5 --length 2048 --frame-error 1e-4
+# a channel that was measured: how many of its bits may be lost at rate 1/2?
+tannery limit --channel receiver.csv --rate 0.5
 # any discrete memoryless channel, a row of output probabilities per input
 tannery limit --matrix buoy.csv`,
 		Long: `The Shannon limit in all its forms. With a channel parameter: the capacity there.
@@ -58,11 +62,17 @@ most the capacity times the symbol rate. With --length the normal approximation
 tells what codes of so many bits can do on bec, bsc and biawgn.
 
 --matrix reads CSV or YAML and finds the capacity by the iteration of Arimoto
-and Blahut, with bounds from both sides and the input distribution reaching it.`,
+and Blahut, with bounds from both sides and the input distribution reaching it.
+
+A channel may be a file (a name with . or / in it): LLR values measured while
+zeros were sent, as CSV with the columns llr and mass or counts, or as YAML; or
+a symmetric transition matrix with two inputs. Its parameter is the share ε of
+bits erased on top, or with --degradation flip the share p of hard decisions
+flipped on top: --parameter 0 is the channel as measured.`,
 		Args: atMost(0, "options only"),
 		RunE: func(cmd *cobra.Command, _ []string) error { return runLimit(cmd, o) },
 	}
-	o.addChannel(cmd, "the channel: bec, bsc, biawgn, laplace or rayleigh")
+	o.addChannel(cmd, "the channel: bec, bsc, biawgn, laplace, rayleigh, or a file")
 	o.addParameter(cmd)
 	f := cmd.Flags()
 	f.Var(&o.rate, "rate", "code rate in information bits per code bit")
@@ -114,7 +124,7 @@ func runLimit(cmd *cobra.Command, o *limitOptions) error {
 	if err != nil {
 		return err
 	}
-	answer := &report.Limit{Schema: "tannery/limit/1", Channel: f.Name(), Parameter: f.Parameter(), Symbol: f.Symbol()}
+	answer := &report.Limit{Schema: "tannery/limit/1", Channel: f.Name(), Parameter: f.Parameter(), Symbol: f.Symbol(), Warnings: slices.Concat([]string{}, o.reader.warnings)}
 	if err := o.shannon(f, answer); err != nil {
 		return err
 	}

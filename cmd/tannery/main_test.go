@@ -34,7 +34,7 @@ func TestUnknownNamesAreSuggested(t *testing.T) {
 		{"frobnicate", "tannery: frobnicate: unknown command; tannery --help lists them\n"},
 		{"limit --chanel bec", "tannery: --chanel: unknown option; did you mean --channel?\n"},
 		{"limit -z", "tannery: -z: unknown option\n"},
-		{"limit --channel biawg", "tannery: --channel: found \"biawg\"; allowed: bec, bsc, biawgn, laplace or rayleigh; did you mean biawgn?\n"},
+		{"limit --channel biawg", "tannery: --channel: found \"biawg\"; allowed: bec, bsc, biawgn, laplace, rayleigh, or a file with . or / in its name; did you mean biawgn?\n"},
 		{"limit extra", "tannery: \"extra\": unexpected; limit takes options only\n"},
 	} {
 		code, stdout, stderr := command(t, "", strings.Fields(c.args)...)

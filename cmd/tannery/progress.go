@@ -4,10 +4,14 @@ import (
 	"fmt"
 	"io"
 	"os"
+	"slices"
+	"strings"
 	"time"
 	"unicode/utf8"
 
 	"github.com/schollz/progressbar/v3"
+
+	"tannery/cmd/tannery/internal/report"
 )
 
 // plainInterval is the time between two lines of progress where there is no
@@ -23,20 +27,26 @@ const barSteps = 1000
 type progress struct {
 	w     io.Writer
 	bar   *progressbar.ProgressBar // nil without a terminal
+	limit time.Duration            // after which the search stops; 0 for none
 	start time.Time
 	shown time.Time // when the last plain line was written
+
+	// Where a search begins that continues an earlier one.
+	begun       bool
+	done        float64
+	evaluations int
 }
 
 // newProgress returns nil if nothing is to be shown.
-func newProgress(w io.Writer, hidden bool) *progress {
+func newProgress(w io.Writer, hidden bool, limit time.Duration) *progress {
 	if hidden {
 		return nil
 	}
-	p := &progress{w: w, start: time.Now(), shown: time.Now()}
+	p := &progress{w: w, limit: limit, start: time.Now(), shown: time.Now()}
 	if isTerminal(w) && os.Getenv("TERM") != "dumb" {
 		p.bar = progressbar.NewOptions(barSteps,
 			progressbar.OptionSetWriter(w),
-			progressbar.OptionSetWidth(14),
+			progressbar.OptionSetWidth(8),
 			progressbar.OptionSetPredictTime(false),
 			progressbar.OptionSetElapsedTime(false),
 			progressbar.OptionThrottle(100*time.Millisecond),
@@ -59,39 +69,54 @@ func isTerminal(w io.Writer) bool {
 }
 
 // textWidth is the room that the bar leaves on a line of 80 columns.
-const textWidth = 56
+const textWidth = 62
 
-// label joins what is known into one line, and shortens the phase where the
-// line would be too long for the bar beside it.
-func label(phase, best, left string) string {
-	rest := ""
-	for _, part := range []string{best, left} {
-		if part != "" {
-			rest += ", " + part
-		}
-	}
-	if room := textWidth - utf8.RuneCountInString(rest); utf8.RuneCountInString(phase) > room {
-		phase = string([]rune(phase)[:max(0, room-1)]) + "…"
-	}
-	return phase + rest
+// label joins what is known into one line.
+func label(parts ...string) string {
+	parts = slices.DeleteFunc(parts, func(part string) bool { return part == "" })
+	return strings.Join(parts, ", ")
 }
 
-// update shows the phase, how much of the work is done (from 0 to 1) and the
-// best so far in words.
-func (p *progress) update(phase string, done float64, best string) {
+// shortened leaves out the end of a phase where the line would be too long for
+// the bar beside it.
+func shortened(phase string, rest ...string) string {
+	room := textWidth - utf8.RuneCountInString(label(append([]string{""}, rest...)...)) - len(", ")
+	if utf8.RuneCountInString(phase) > room {
+		return string([]rune(phase)[:max(0, room-1)]) + "…"
+	}
+	return phase
+}
+
+// update shows the phase, how much of the work is done (from 0 to 1), the best
+// so far in words, and the evaluations made.
+func (p *progress) update(phase string, done float64, best string, evaluations int) {
 	if p == nil {
 		return
 	}
-	text := label(phase, best, remaining(time.Since(p.start), done))
+	if !p.begun {
+		p.begun, p.done, p.evaluations = true, done, evaluations
+	}
+	elapsed := time.Since(p.start)
+	left := remaining(elapsed, p.done, done, p.limit)
 	switch {
 	case p.bar != nil:
-		p.bar.Describe(text)
+		rate := perSecond(evaluations-p.evaluations, elapsed, "/s")
+		p.bar.Describe(label(shortened(phase, best, rate, left), best, rate, left))
 		// One step is left out so that the bar does not finish by itself.
 		_ = p.bar.Set(int(done * (barSteps - 1)))
 	case time.Since(p.shown) >= plainInterval:
 		p.shown = time.Now()
-		fmt.Fprintf(p.w, "tannery: %s\n", text)
+		fmt.Fprintf(p.w, "tannery: %s\n", label(phase, best, perSecond(evaluations-p.evaluations, elapsed, " evaluations per second"), left))
 	}
+}
+
+// perSecond is the speed in evaluations; nothing before there is something to
+// go by.
+func perSecond(evaluations int, elapsed time.Duration, unit string) string {
+	if evaluations <= 0 || elapsed < time.Second {
+		return ""
+	}
+	return report.Significant(float64(evaluations)/elapsed.Seconds(), 2) + unit
 }
 
 // ending tells a person who has interrupted the search that it was heard: the
@@ -109,12 +134,16 @@ func (p *progress) finish() {
 	}
 }
 
-// remaining estimates the time left from the share of the work done, in
-// whole seconds; nothing before there is something to go by.
-func remaining(elapsed time.Duration, done float64) string {
-	if done < 0.01 || done >= 1 || elapsed < time.Second {
+// remaining estimates the time left in whole seconds, from the share of the
+// work that was done at the start and is done now, and from the time allowed;
+// nothing before there is something to go by.
+func remaining(elapsed time.Duration, before, done float64, limit time.Duration) string {
+	if done-before < 0.01 || done >= 1 || elapsed < time.Second {
 		return ""
 	}
-	left := time.Duration(float64(elapsed) * (1 - done) / done).Round(time.Second)
-	return left.String() + " left"
+	left := time.Duration(float64(elapsed) * (1 - done) / (done - before))
+	if limit > 0 {
+		left = max(0, min(left, limit-elapsed))
+	}
+	return left.Round(time.Second).String() + " left"
 }

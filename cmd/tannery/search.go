@@ -1,9 +1,11 @@
 package main
 
 import (
+	"cmp"
 	"context"
 	"errors"
 	"fmt"
+	"path/filepath"
 	"runtime"
 	"time"
 
@@ -35,19 +37,36 @@ tannery search harbour.yaml --max-edges-per-bit 3.8 -o link.yaml
 # the degrees that the hardware has
 tannery search --channel biawgn --rate 0.5 --variable-degrees 2,3,4,8 \
     --check-degrees 6,7
+# three different degrees, 20 iterations, and two channels to work on
+tannery search --channel biawgn,bsc --rate 0.5 --max-variable-degree 8 \
+    --max-distinct-degrees 3 --max-iterations 20 -o small.yaml
 # straight on to node counts
 tannery search harbour.yaml -o - | tannery export - --length 16384`,
 		Long: `A brief is a YAML file (tannery schema brief); options win over it, and without
-a brief they must say at least --channel and --rate. Given a check degree
-distribution a linear programme finds the best variable degrees; the search goes
-over the check degrees. The design rate comes out exactly as asked.
+a brief they must say at least --channel and --rate. The design rate comes out
+exactly as asked.
+
+By --method quantized (every channel; the default but on bec) profiles are
+judged by density evolution and improved by linear programmes over variable
+degrees, check degrees and the channel parameter together. On bec the method
+exact proves its variable degrees best for their check degrees. On biawgn the
+method gaussian takes a second or two, and is as far from the truth as the
+Gaussian approximation. Limits on iterations, and several channels at once,
+need quantized.
 
 The report goes to standard output, and the profile to the file of -o. With -o -
 the profile goes to standard output and the report to standard error. A search
-that is interrupted or out of --time writes the best found. If a link of the
-brief cannot be served by the best found, it is written and the exit code is 3.
+that is interrupted or out of --time or --evaluations writes the best found. If
+a link of the brief cannot be served by the best found, it is written and the
+exit code is 3.
 
-Covered so far: exact on bec and gaussian on biawgn.`,
+With -o FILE, a search by quantized keeps its state in FILE.checkpoint (or in
+the file of --checkpoint): the same command continues there after an
+interruption, even after a crash, and ends in the same profile to the bit.
+A checkpoint of another brief, seed or version is refused. It is removed once
+the search has settled and the profile is written.
+
+` + channelFileHelp,
 		Args:              atMost(1, "one brief"),
 		ValidArgsFunction: profileFiles,
 		RunE:              func(cmd *cobra.Command, args []string) error { return runSearch(cmd, args, o) },
@@ -56,16 +75,12 @@ Covered so far: exact on bec and gaussian on biawgn.`,
 	return cmd
 }
 
-func runSearch(cmd *cobra.Command, args []string, o *searchOptions) error {
+func runSearch(cmd *cobra.Command, args []string, o *searchOptions) (err error) {
 	b, err := o.brief(cmd, args)
 	if err != nil {
 		return err
 	}
-	family, err := channel.ByName(b.Channel)
-	if err != nil {
-		return invalid(err)
-	}
-	method, err := searchMethod(b, family)
+	method, err := searchMethod(b)
 	if err != nil {
 		return err
 	}
@@ -73,72 +88,123 @@ func runSearch(cmd *cobra.Command, args []string, o *searchOptions) error {
 	if err != nil {
 		return err
 	}
-	start := time.Now()
-	shown := newProgress(cmd.ErrOrStderr(), o.noProgress || quiet(cmd))
-	defer context.AfterFunc(cmd.Context(), shown.ending)()
-	result, err := optimize.Search(cmd.Context(), problemOf(b, family), optimize.Settings{
-		Method:   method,
-		Seed:     b.Seed,
-		Time:     b.Time,
-		Workers:  workers(b),
-		Recorder: &searchProgress{shown, family},
-	})
-	shown.finish()
-	if err != nil {
-		return searchError(cmd.Context(), err)
-	}
-	p, err := foundProfile(b, family, result)
+	kept, state, err := o.openCheckpoint(cmd, b, method, out)
 	if err != nil {
 		return err
 	}
-	answer := searchAnswer(b, family, p, result)
+	settled := false
+	defer func() {
+		if failed := kept.close(settled && err == nil); failed != nil {
+			warn(cmd, []string{failed.Error()})
+		}
+	}()
+	family := b.Families[0]
+	start := time.Now()
+	shown := newProgress(cmd.ErrOrStderr(), o.noProgress || quiet(cmd), b.Time)
+	defer context.AfterFunc(cmd.Context(), shown.ending)()
+	settings := optimize.Settings{
+		Method:      method,
+		Seed:        b.Seed,
+		Time:        b.Time,
+		Evaluations: b.Evaluations,
+		Workers:     workers(b),
+		Recorder:    &searchProgress{shown, family},
+		Resume:      state,
+	}
+	if kept != nil {
+		settings.Checkpoint = kept.keep
+	}
+	result, err := optimize.Search(cmd.Context(), problemOf(b), settings)
+	shown.finish()
+	if err != nil {
+		return searchError(cmd.Context(), err, kept)
+	}
+	p, err := foundProfile(b, result)
+	if err != nil {
+		return err
+	}
+	answer := searchAnswer(b, p, result)
 	answer.Seconds = time.Since(start).Seconds()
 	answer.File = o.output
+	answer.Resumed = state != nil
+	answer.Warnings = append(answer.Warnings, o.reader.warnings...)
 	answer.Tunnel = tunnelAt(cmd.Context(), result.Ensemble, family, result.Threshold, nil)
 	answer.Draw = atTerminal(cmd)
+	settled = result.Status == optimize.Settled
+	if kept != nil && !settled {
+		answer.Checkpoint = kept.path
+	}
 	if err := out.deliver(p, answer); err != nil {
 		return err
 	}
 	if result.Status == optimize.Interrupted {
 		return context.Cause(cmd.Context())
 	}
-	return linkMargin(b, family, result.Threshold.Value)
+	return linkMargin(b, result.Threshold.Value)
 }
 
-// searchMethod returns the way to search that fits the channel and the method
-// of analysis asked for.
-func searchMethod(b brief.Brief, f channel.Family) (optimize.Method, error) {
-	covered := []struct {
-		channel string
-		method  de.Method
-		search  optimize.Method
-	}{
-		{channel.BEC{}.Name(), de.Exact, optimize.BECDesign{}},
-		{channel.BIAWGN{}.Name(), de.Gaussian, optimize.GaussianDesign{}},
+// openCheckpoint opens the checkpoint asked for, or the one beside the output;
+// nil without either, or for a method that has none.
+func (o *searchOptions) openCheckpoint(cmd *cobra.Command, b brief.Brief, m optimize.Method, out *profileOutput) (*checkpoint, []byte, error) {
+	path := o.checkpoint
+	given := cmd.Flags().Changed("checkpoint")
+	_, resumable := m.(optimize.QuantizedDesign)
+	switch {
+	case given && !resumable:
+		return nil, nil, usagef("--checkpoint: found %s; allowed: nothing, because this search ends within seconds; only --method quantized takes longer", path)
+	case given && out.file != nil && filepath.Clean(path) == filepath.Clean(o.output):
+		return nil, nil, usagef("--checkpoint and --output: found the same file, %s; allowed: two", path)
+	case !given && (!resumable || out.file == nil || out.file.direct):
+		return nil, nil, nil
+	case !given:
+		path = o.output + ".checkpoint"
 	}
-	for _, c := range covered {
-		if c.channel == f.Name() && (b.Method == "" || b.Method == string(c.method)) {
-			return c.search, nil
-		}
+	kept, state, err := openCheckpoint(path, b, m)
+	if err == nil && state != nil && !quiet(cmd) {
+		fmt.Fprintf(cmd.ErrOrStderr(), "tannery: continuing from %s\n", path)
 	}
-	method := b.Method
-	if method == "" {
-		method = "any method"
+	return kept, state, err
+}
+
+// searchMethod returns the way to search by the method of analysis asked for,
+// or by the one that fits the brief.
+func searchMethod(b brief.Brief) (optimize.Method, error) {
+	name := b.Families[0].Name()
+	single := len(b.Families) == 1
+	switch method := de.Method(b.Method); {
+	case method == de.Quantized:
+		return optimize.QuantizedDesign{}, nil
+	case method == "" && single && name == (channel.BEC{}).Name() && b.Iterations == 0:
+		return optimize.BECDesign{}, nil
+	case method == "":
+		return optimize.QuantizedDesign{}, nil
+	case method == de.Exact && single && name == (channel.BEC{}).Name():
+		return optimize.BECDesign{}, nil
+	case method == de.Gaussian && single && name == (channel.BIAWGN{}).Name():
+		return optimize.GaussianDesign{}, nil
 	}
-	return nil, usagef("search on channel %s by %s: not covered; allowed: exact on bec, gaussian on biawgn", f.Name(), method)
+	where := "channel " + name
+	if !single {
+		where = "several channels"
+	}
+	return nil, usagef("--method: found %s; allowed for a search on %s: quantized (exact searches on bec, gaussian on biawgn)", b.Method, where)
 }
 
 // problemOf turns the brief into the problem of the search.
-func problemOf(b brief.Brief, f channel.Family) optimize.Problem {
+func problemOf(b brief.Brief) optimize.Problem {
 	p := optimize.Problem{
-		Channel:         f,
+		Channel:         b.Families[0],
+		Also:            b.Families[1:],
 		Rate:            b.Rate,
 		VariableDegrees: b.VariableDegrees.Allowed,
 		CheckDegrees:    b.CheckDegrees.Allowed,
 		Limits: optimize.Limits{
 			EdgesPerBit:     b.EdgesPerBit,
 			DegreeTwoParity: b.DegreeTwo == "parity",
+			DistinctDegrees: b.DistinctDegrees,
+			StabilityMargin: b.StabilityMargin,
 			Iterations:      b.Iterations,
+			TargetError:     b.TargetError,
 		},
 	}
 	if p.VariableDegrees == nil {
@@ -162,8 +228,10 @@ func workers(b brief.Brief) int {
 }
 
 // searchError sorts the ways in which a search ends without any profile.
-func searchError(ctx context.Context, err error) error {
+func searchError(ctx context.Context, err error, kept *checkpoint) error {
 	switch {
+	case errors.Is(err, optimize.ErrCheckpoint):
+		return usagef("%s: %w; allowed: that of this search, another --checkpoint, or to remove the file and start anew", kept.path, err)
 	case ctx.Err() != nil:
 		return fmt.Errorf("%w before anything was found; nothing is written", context.Cause(ctx))
 	case errors.Is(err, context.DeadlineExceeded):
@@ -188,41 +256,43 @@ var _ optimize.Recorder = (*searchProgress)(nil)
 func (s *searchProgress) Progress(p optimize.Progress) {
 	best := ""
 	if p.Threshold > 0 {
-		best = fmt.Sprintf("best gap %s in %s", report.Significant(p.Gap, 3), s.family.Symbol())
+		gap := report.Significant(p.Gap, 2)
 		if db := decibels(s.family, p.Threshold, p.Threshold+p.Gap); db != nil {
-			best = fmt.Sprintf("best gap %.4f dB", *db)
+			gap = fmt.Sprintf("%.4f dB", *db)
 		}
+		best = fmt.Sprintf("%s %.5f (gap %s)", s.family.Symbol(), p.Threshold, gap)
 	}
-	s.screen.update(p.Phase, p.Fraction, best)
+	s.screen.update(p.Phase, p.Fraction, best, p.Evaluations)
 }
 
 // Improved implements optimize.Recorder.
 func (s *searchProgress) Improved(optimize.Improvement) {}
 
 // foundProfile makes a profile of the result, with its provenance.
-func foundProfile(b brief.Brief, f channel.Family, r optimize.Result) (ensembles.Profile, error) {
-	result, err := resultOf(r.Ensemble, f, r.Threshold)
-	if err != nil {
-		return ensembles.Profile{}, err
+func foundProfile(b brief.Brief, r optimize.Result) (ensembles.Profile, error) {
+	p := ensembles.Profile{Title: b.Title, Ensemble: r.Ensemble}
+	for i, f := range b.Families {
+		threshold := r.Thresholds[i]
+		if b.Iterations > 0 {
+			// Results of profiles are for decoders without a limit. The search
+			// may be out of time, but its profile is made whole.
+			var err error
+			if threshold, err = (de.QuantizedEngine{}).Threshold(context.Background(), r.Ensemble, f); err != nil {
+				return p, err
+			}
+		}
+		result, err := resultOf(r.Ensemble, f, threshold)
+		if err != nil {
+			return p, err
+		}
+		p.Results = append(p.Results, result)
 	}
 	tree, err := asked(b)
-	if err != nil {
-		return ensembles.Profile{}, err
-	}
-	return ensembles.Profile{
-		Title:    b.Title,
-		Ensemble: r.Ensemble,
-		Results:  []ensembles.Result{result},
-		Provenance: ensembles.Provenance{
-			Program: program,
-			Seed:    &b.Seed,
-			Created: now(),
-			Brief:   tree,
-		},
-	}, nil
+	p.Provenance = ensembles.Provenance{Program: program, Seed: &b.Seed, Created: now(), Brief: tree}
+	return p, err
 }
 
-func searchAnswer(b brief.Brief, f channel.Family, p ensembles.Profile, r optimize.Result) *report.Search {
+func searchAnswer(b brief.Brief, p ensembles.Profile, r optimize.Result) *report.Search {
 	answer := &report.Search{
 		Schema:      "tannery/search/1",
 		Profile:     p,
@@ -231,9 +301,22 @@ func searchAnswer(b brief.Brief, f channel.Family, p ensembles.Profile, r optimi
 		Programmes:  r.Stats.Programmes,
 		EdgesPerBit: r.Ensemble.EdgesPerBit(),
 		Binding:     append([]string{}, r.Binding...),
-		Threshold:   thresholdAnswer(p, f, r.Threshold),
+		Phases:      []report.PhaseTime{},
+		Warnings:    []string{},
 	}
-	if f.Name() == (channel.BEC{}).Name() {
+	for _, phase := range r.Stats.Seconds {
+		answer.Phases = append(answer.Phases, report.PhaseTime(phase))
+	}
+	for i, f := range b.Families {
+		threshold := thresholdAnswer(p, f, r.Thresholds[i])
+		if b.Iterations > 0 {
+			threshold.Limited = &report.LimitedTarget{Iterations: b.Iterations, TargetError: cmp.Or(b.TargetError, optimize.DefaultTargetError)}
+		}
+		answer.Thresholds = append(answer.Thresholds, threshold)
+	}
+	answer.Threshold = answer.Thresholds[0]
+	f := b.Families[0]
+	if len(b.Families) == 1 && f.Name() == (channel.BEC{}).Name() {
 		mean := r.Ensemble.MeanCheckDegree()
 		answer.DegreeBound = &report.DegreeBound{MeanCheckDegree: mean, Threshold: optimize.MeanDegreeBound(mean, r.Ensemble.DesignRate())}
 	}

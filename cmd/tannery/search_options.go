@@ -6,7 +6,6 @@ import (
 	"github.com/spf13/cobra"
 
 	"tannery/cmd/tannery/internal/brief"
-	"tannery/de/channel"
 	"tannery/ensembles"
 	"tannery/ensembles/document"
 )
@@ -14,18 +13,26 @@ import (
 // searchOptions are the options of search. Those of the same meaning win
 // over the brief.
 type searchOptions struct {
-	parameterOptions // of which search has --channel
+	channels    channelsOption
+	degradation nameOption
+	reader      channelReader
 	methodOption
 	rate              numberOption
 	maxVariableDegree integerOption
 	variableDegrees   degreesOption
 	checkDegrees      degreesOption
 	maxIterations     integerOption
+	targetError       numberOption
 	maxEdgesPerBit    numberOption
+	maxDistinct       integerOption
+	stabilityMargin   numberOption
+	degreeTwo         nameOption
 	seed              seedOption
 	time              durationOption
+	evaluations       integerOption
 	workers           integerOption
 	output            string
+	checkpoint        string
 	noProgress        bool
 }
 
@@ -36,25 +43,40 @@ func newSearchOptions() *searchOptions {
 		variableDegrees:   degreesOption{low: 2},
 		checkDegrees:      degreesOption{low: 2},
 		maxIterations:     integerOption{low: 1, high: brief.MaxIterations},
+		targetError:       numberOption{allow: brief.TargetErrors},
 		maxEdgesPerBit:    numberOption{allow: document.AtLeast(1)},
+		maxDistinct:       integerOption{low: 1, high: brief.MaxDistinctDegrees},
+		stabilityMargin:   numberOption{allow: brief.StabilityMargins},
+		degreeTwo:         nameOption{names: brief.DegreeTwoRules},
+		evaluations:       integerOption{low: 1, high: brief.MaxEvaluations},
 		workers:           integerOption{low: 1, high: brief.MaxWorkers},
 	}
 }
 
 func (o *searchOptions) add(cmd *cobra.Command) {
-	o.addChannel(cmd, "the channel: bec, bsc, biawgn, laplace or rayleigh")
-	o.addMethod(cmd)
+	o.reader.cmd = cmd
 	f := cmd.Flags()
+	f.Var(&o.channels, "channel", "the channel: bec, bsc, biawgn, laplace, rayleigh, or a file; several with commas between them, of which the worst gap counts")
+	completeChannel(cmd)
+	addDegradation(cmd, &o.degradation)
+	o.addMethod(cmd)
 	f.Var(&o.rate, "rate", "code rate in information bits per code bit")
 	f.Var(&o.maxVariableDegree, "max-variable-degree", "largest degree of a variable node")
 	f.Var(&o.variableDegrees, "variable-degrees", "the degrees allowed at variable nodes, as `2,3,8`")
 	f.Var(&o.checkDegrees, "check-degrees", "the degrees allowed at check nodes, as `7,8`")
 	f.Var(&o.maxIterations, "max-iterations", "iterations that the decoder can do")
+	f.Var(&o.targetError, "target-error", "bit error rate to reach in them; 1e-6 if not given")
 	f.Var(&o.maxEdgesPerBit, "max-edges-per-bit", "edges per code bit that the decoder can hold")
+	f.Var(&o.maxDistinct, "max-distinct-degrees", "different variable degrees that the decoder can hold")
+	f.Var(&o.stabilityMargin, "stability-margin", "least relative distance from instability at the threshold, such as 0.02")
+	f.Var(&o.degreeTwo, "degree-two", "parity: no more variable nodes of degree 2 than a chain of parity bits has; free: as many as stability allows")
+	complete(cmd, "degree-two", o.degreeTwo.names)
 	f.Var(&o.seed, "seed", "seed of the search: the same seed finds the same profile")
 	f.Var(&o.time, "time", "time to stop at with the best found, such as 60s")
+	f.Var(&o.evaluations, "evaluations", "evaluations to stop after with the best found")
 	f.Var(&o.workers, "workers", "processors to use; all if not given")
 	f.StringVarP(&o.output, "output", "o", "", "`FILE` for the profile, or - for standard output")
+	f.StringVar(&o.checkpoint, "checkpoint", "", "`FILE` for the state of the search, to continue after an interruption; that of -o with .checkpoint behind it if not given")
 	f.BoolVar(&o.noProgress, "no-progress", false, "no progress on standard error")
 }
 
@@ -63,30 +85,36 @@ func (o *searchOptions) brief(cmd *cobra.Command, args []string) (brief.Brief, e
 	if err := exclusive(cmd, "max-variable-degree", "variable-degrees"); err != nil {
 		return brief.Brief{}, err
 	}
-	draft := brief.New()
+	given := brief.Channels{Names: o.channels.values, Degradation: o.degradation.value, Find: o.reader.find}
+	var draft *brief.Draft
 	if len(args) > 0 {
 		content, name, err := readInput(cmd.Context(), args[0], cmd.InOrStdin())
 		if err != nil {
 			return brief.Brief{}, err
 		}
-		draft = brief.Decode(name, content, o.channel.value)
+		draft = brief.Decode(name, content, given)
 	} else {
-		draft.Channel = o.channel.value
+		draft = brief.New(given)
 	}
 	for option, take := range map[string]struct {
 		key   string
 		apply func()
 	}{
-		"method":              {"method", func() { draft.Method = o.method.value }},
-		"rate":                {"rate", func() { draft.Rate, draft.Link = o.rate.value, nil }},
-		"max-variable-degree": {"variable_degrees", func() { draft.VariableDegrees = brief.Degrees{Max: o.maxVariableDegree.value} }},
-		"variable-degrees":    {"variable_degrees", func() { draft.VariableDegrees = brief.Degrees{Allowed: o.variableDegrees.degrees} }},
-		"check-degrees":       {"check_degrees", func() { draft.CheckDegrees = brief.Degrees{Allowed: o.checkDegrees.degrees} }},
-		"max-iterations":      {"limits.iterations", func() { draft.Iterations = o.maxIterations.value }},
-		"max-edges-per-bit":   {"limits.edges_per_bit", func() { draft.EdgesPerBit = o.maxEdgesPerBit.value }},
-		"seed":                {"search.seed", func() { draft.Seed = o.seed.value }},
-		"time":                {"search.time", func() { draft.Time = o.time.value }},
-		"workers":             {"search.workers", func() { draft.Workers = o.workers.value }},
+		"method":               {"method", func() { draft.Method = o.method.value }},
+		"rate":                 {"rate", func() { draft.Rate, draft.Link = o.rate.value, nil }},
+		"max-variable-degree":  {"variable_degrees", func() { draft.VariableDegrees = brief.Degrees{Max: o.maxVariableDegree.value} }},
+		"variable-degrees":     {"variable_degrees", func() { draft.VariableDegrees = brief.Degrees{Allowed: o.variableDegrees.degrees} }},
+		"check-degrees":        {"check_degrees", func() { draft.CheckDegrees = brief.Degrees{Allowed: o.checkDegrees.degrees} }},
+		"max-iterations":       {"limits.iterations", func() { draft.Iterations = o.maxIterations.value }},
+		"max-edges-per-bit":    {"limits.edges_per_bit", func() { draft.EdgesPerBit = o.maxEdgesPerBit.value }},
+		"target-error":         {"limits.target_error", func() { draft.TargetError = o.targetError.value }},
+		"max-distinct-degrees": {"limits.distinct_degrees", func() { draft.DistinctDegrees = o.maxDistinct.value }},
+		"stability-margin":     {"limits.stability_margin", func() { draft.StabilityMargin = o.stabilityMargin.value }},
+		"degree-two":           {"limits.degree_two", func() { draft.DegreeTwo = o.degreeTwo.value }},
+		"evaluations":          {"search.evaluations", func() { draft.Evaluations = o.evaluations.value }},
+		"seed":                 {"search.seed", func() { draft.Seed = o.seed.value }},
+		"time":                 {"search.time", func() { draft.Time = o.time.value }},
+		"workers":              {"search.workers", func() { draft.Workers = o.workers.value }},
 	} {
 		if cmd.Flags().Changed(option) {
 			take.apply()
@@ -112,15 +140,19 @@ func asked(b brief.Brief) (document.Tree, error) {
 		return &degrees{d.Max, d.Allowed}
 	}
 	type limits struct {
-		Iterations  int     `yaml:"iterations,omitempty"`
-		EdgesPerBit float64 `yaml:"edges_per_bit,omitempty"`
-		DegreeTwo   string  `yaml:"degree_two,omitempty"`
+		Iterations      int     `yaml:"iterations,omitempty"`
+		TargetError     float64 `yaml:"target_error,omitempty"`
+		EdgesPerBit     float64 `yaml:"edges_per_bit,omitempty"`
+		DegreeTwo       string  `yaml:"degree_two,omitempty"`
+		DistinctDegrees int     `yaml:"distinct_degrees,omitempty"`
+		StabilityMargin float64 `yaml:"stability_margin,omitempty"`
 	}
 	out := struct {
 		Kind            string             `yaml:"kind"`
 		Version         int                `yaml:"version"`
 		Title           string             `yaml:"title,omitempty"`
-		Channel         string             `yaml:"channel"`
+		Channel         any                `yaml:"channel"` // one, or a list
+		Degradation     string             `yaml:"degradation,omitempty"`
 		Rate            float64            `yaml:"rate,omitempty"`
 		Link            map[string]float64 `yaml:"link,omitempty"`
 		Method          string             `yaml:"method,omitempty"`
@@ -129,25 +161,24 @@ func asked(b brief.Brief) (document.Tree, error) {
 		Limits          *limits            `yaml:"limits,omitempty"`
 		Search          map[string]uint64  `yaml:"search,omitempty"`
 	}{
-		Kind: "brief", Version: 1, Title: b.Title, Channel: b.Channel, Rate: b.Rate, Method: b.Method,
+		Kind: "brief", Version: 1, Title: b.Title, Channel: b.Channel, Degradation: b.Degradation, Rate: b.Rate, Method: b.Method,
 		VariableDegrees: degreesOf(b.VariableDegrees),
 		CheckDegrees:    degreesOf(b.CheckDegrees),
 		Search:          map[string]uint64{"seed": b.Seed},
 	}
-	if l := (limits{b.Iterations, b.EdgesPerBit, b.DegreeTwo}); l != (limits{}) {
+	if len(b.Also) > 0 {
+		out.Channel = append([]string{b.Channel}, b.Also...)
+	}
+	if l := (limits{b.Iterations, b.TargetError, b.EdgesPerBit, b.DegreeTwo, b.DistinctDegrees, b.StabilityMargin}); l != (limits{}) {
 		out.Limits = &l
 	}
 	if b.Link != nil {
-		family, err := channel.ByName(b.Channel)
-		if err != nil {
-			return document.Tree{}, err
-		}
 		out.Rate = 0
 		out.Link = map[string]float64{
-			"source_rate":        b.Link.SourceRate,
-			"source_probability": b.Link.SourceProbability,
-			"symbol_rate":        b.Link.SymbolRate,
-			family.Parameter():   b.Link.Parameter,
+			"source_rate":             b.Link.SourceRate,
+			"source_probability":      b.Link.SourceProbability,
+			"symbol_rate":             b.Link.SymbolRate,
+			b.Families[0].Parameter(): b.Link.Parameter,
 		}
 	}
 	return document.TreeOf(out)
@@ -155,10 +186,10 @@ func asked(b brief.Brief) (document.Tree, error) {
 
 // linkMargin tells whether a threshold is enough for the link of the brief,
 // if it has one: an error says what is missing.
-func linkMargin(b brief.Brief, f channel.Family, threshold float64) error {
+func linkMargin(b brief.Brief, threshold float64) error {
 	if b.Link == nil || threshold >= b.Link.Parameter {
 		return nil
 	}
 	return unreachedError{fmt.Errorf("the brief is not reached: the link's %s = %.6g needs a threshold of at least that, the best found has %.6g; allowed: larger degrees, a lower rate or a better channel",
-		f.Symbol(), b.Link.Parameter, threshold)}
+		b.Families[0].Symbol(), b.Link.Parameter, threshold)}
 }

@@ -12,6 +12,7 @@ import (
 	"testing"
 
 	"tannery/cmd/tannery/internal/brief"
+	"tannery/de/channel"
 	"tannery/ensembles"
 )
 
@@ -73,6 +74,48 @@ func TestSearchJSON(t *testing.T) {
 	}
 }
 
+// Several channels with a decoder's limits: the worst gap is told first, and
+// the profile has a result for each channel, for a decoder without a limit on
+// iterations.
+func TestSearchOnSeveralChannels(t *testing.T) {
+	args := strings.Fields("search --channel biawgn,bsc --rate 0.5 --variable-degrees 2,3,5 --check-degrees 6 --evaluations 10")
+	type threshold struct {
+		Channel   string
+		Threshold float64
+		Gap       struct{ Rate float64 }
+		Limited   struct {
+			Iterations  int
+			TargetError float64 `json:"target_error"`
+		}
+	}
+	var answer struct {
+		Status     string
+		Thresholds []threshold
+		Profile    struct{ Results []threshold }
+	}
+	if err := json.Unmarshal([]byte(succeed(t, "", append(args, "--max-iterations", "30", "--json")...)), &answer); err != nil {
+		t.Fatal(err)
+	}
+	if answer.Status != "evaluation limit" || len(answer.Thresholds) != 2 || len(answer.Profile.Results) != 2 {
+		t.Fatalf("%+v", answer)
+	}
+	for i, name := range []string{"biawgn", "bsc"} {
+		limited, whole := answer.Thresholds[i], answer.Profile.Results[i]
+		if limited.Channel != name || whole.Channel != name || limited.Limited.Iterations != 30 || limited.Limited.TargetError != 1e-6 || !(limited.Threshold < whole.Threshold) {
+			t.Errorf("%+v, without the limit %+v", limited, whole)
+		}
+	}
+	text := succeed(t, "", args...)
+	table := text[strings.Index(text, "Channels, the worst gap in rate first"):]
+	first, other := "bsc", "biawgn"
+	if strings.Index(table, " biawgn") < strings.Index(table, " bsc") {
+		first, other = other, first
+	}
+	if !strings.Contains(table, "Threshold on "+first) || strings.Contains(table, "Threshold on "+other) {
+		t.Errorf("not of the worst channel:\n%s", text)
+	}
+}
+
 // The profile found does not depend on the number of workers.
 func TestSearchIsReproducible(t *testing.T) {
 	t.Setenv("SOURCE_DATE_EPOCH", "0")
@@ -80,6 +123,12 @@ func TestSearchIsReproducible(t *testing.T) {
 	three := succeed(t, "", strings.Fields(quickSearch+" -o - -q --workers 3")...)
 	if one != three {
 		t.Errorf("one worker:\n%s\nthree:\n%s", one, three)
+	}
+	const quantized = "search --channel biawgn --rate 0.5 --max-variable-degree 5 --evaluations 25 -o - -q --workers "
+	one = succeed(t, "", strings.Fields(quantized+"1")...)
+	two := succeed(t, "", strings.Fields(quantized+"2")...)
+	if one != two {
+		t.Errorf("one worker:\n%s\ntwo:\n%s", one, two)
 	}
 }
 
@@ -98,9 +147,18 @@ func TestBriefOfProvenance(t *testing.T) {
 	for _, want := range []brief.Brief{
 		{Channel: "bec", Rate: 0.5, Seed: 7},
 		{Title: "harbour: it's full", Channel: "biawgn", Rate: 0.25, Method: "gaussian", VariableDegrees: brief.Degrees{Max: 15},
-			CheckDegrees: brief.Degrees{Allowed: []int{3, 9}}, Iterations: 9, EdgesPerBit: 3.25, DegreeTwo: "parity", Seed: 1<<64 - 1},
+			CheckDegrees: brief.Degrees{Allowed: []int{3, 9}}, Iterations: 9, TargetError: 1e-5, EdgesPerBit: 3.25, DegreeTwo: "parity",
+			DistinctDegrees: 3, StabilityMargin: 0.02, Seed: 1<<64 - 1},
 		{Channel: "bsc", Rate: 0.5, Link: &brief.Link{SourceRate: 9600, SourceProbability: 0.5, SymbolRate: 19200, Parameter: 0.01}},
+		{Channel: "biawgn", Also: []string{"bsc", "laplace"}, Rate: 0.5},
 	} {
+		for _, name := range append([]string{want.Channel}, want.Also...) {
+			f, err := channel.ByName(name)
+			if err != nil {
+				t.Fatal(err)
+			}
+			want.Families = append(want.Families, f)
+		}
 		tree, err := asked(want)
 		if err != nil {
 			t.Fatal(err)
@@ -109,7 +167,7 @@ func TestBriefOfProvenance(t *testing.T) {
 		if err != nil {
 			t.Fatal(err)
 		}
-		got, err := brief.Decode("provenance", text, "").Finish()
+		got, err := brief.Decode("provenance", text, brief.Channels{}).Finish()
 		if err != nil || !reflect.DeepEqual(got, want) {
 			t.Errorf("%v\n%s got %+v\nwant %+v", err, text, got, want)
 		}
@@ -122,9 +180,9 @@ func TestBadBriefs(t *testing.T) {
 		code        int
 		want        string
 	}{
-		{"search", "", exitUsage, "--channel: missing; allowed: bec, bsc, biawgn, laplace or rayleigh\ntannery: --rate: missing; allowed: a number above 0 and below 1"},
+		{"search", "", exitUsage, "--channel: missing; allowed: bec, bsc, biawgn, laplace, rayleigh, or a file with . or / in its name\ntannery: --rate: missing; allowed: a number above 0 and below 1"},
 		{"search -", "kind: brief\nversion: 1\nchannel: bec\nrate: 0.5\nlimits: {iteration: 3}\n", exitUsage,
-			"standard input:5:10: limits.iteration: found an unknown key; allowed: iterations (nearest of iterations, edges_per_bit, degree_two)"},
+			"standard input:5:10: limits.iteration: found an unknown key; allowed: iterations (nearest of iterations, target_error, edges_per_bit, degree_two, distinct_degrees, stability_margin)"},
 		{"search -", "kind: brief\nversion: 1\nchannel: bec\nrate: 0.5\nrate: 0.4\n", exitUsage,
 			"standard input:5:1: rate: found a duplicate key; allowed: each key once (first on line 4)"},
 		{"search -", "kind: brief\nversion: 1\nchannel: bec\nrate: 0.5\n---\n", exitUsage,
@@ -145,7 +203,7 @@ func TestBadBriefs(t *testing.T) {
 		{"search --channel bec --rate 0.5 --time -5s", "", exitUsage, `--time: found "-5s"; allowed: a time above 0 with its unit, such as 60s or 5m`},
 		{"search --channel bec --rate 0.5 --seed -1", "", exitUsage, `--seed: found "-1"; allowed: a whole number from 0 to 18446744073709551615`},
 		{"search --channel laplace --rate 0.5 --method gaussian", "", exitUsage,
-			"search on channel laplace by gaussian: not covered; allowed: exact on bec, gaussian on biawgn"},
+			"--method: found gaussian; allowed for a search on channel laplace: quantized (exact searches on bec, gaussian on biawgn)"},
 		{"search --channel bec --rate 0.5 -o ", "", exitUsage, "--output: needs a value"},
 		{"search a.yaml b.yaml", "", exitUsage, `"b.yaml": unexpected; search takes one brief`},
 		{"search none.yaml", "", exitUsage, "none.yaml: cannot be read: no such file or directory"},

@@ -3,14 +3,16 @@ package main
 import (
 	"context"
 	"errors"
+	"slices"
 
 	"github.com/spf13/cobra"
 
+	"tannery/cmd/tannery/internal/brief"
 	"tannery/cmd/tannery/internal/report"
 	"tannery/de"
 	"tannery/de/channel"
 	"tannery/ensembles"
-	"tannery/ensembles/document"
+	"tannery/optimize"
 )
 
 type thresholdOptions struct {
@@ -24,7 +26,7 @@ type thresholdOptions struct {
 func newThreshold() *cobra.Command {
 	o := &thresholdOptions{
 		iterations:  integerOption{low: 1, high: maxIterations},
-		targetError: numberOption{allow: document.Between(0, 0.5), value: 1e-6},
+		targetError: numberOption{allow: brief.TargetErrors, value: optimize.DefaultTargetError},
 	}
 	cmd := &cobra.Command{
 		Use:   "threshold PROFILE [options]",
@@ -37,6 +39,8 @@ tannery threshold --lambda 3:1 --rho 6:1 --channel bec --json
 tannery threshold harbour.yaml --channel biawgn --method gaussian
 # for a decoder that stops after 20 iterations at bit error rate 1e-6
 tannery threshold harbour.yaml --iterations 20 --target-error 1e-6
+# on a channel that was measured: how many of its bits may be lost?
+tannery threshold harbour.yaml --channel receiver.csv
 # of a profile that another program writes
 draw-profile | tannery threshold - --channel bsc`,
 		Long: `The threshold is the worst channel parameter at which the decoder succeeds as
@@ -47,7 +51,9 @@ margin, and where the decoding tunnel closes. On the BEC also the bound that no
 decoder of these graphs can pass, by the area theorem.
 
 With --iterations N the decoder has N iterations to bring the bit error rate
-down to --target-error.`,
+down to --target-error.
+
+` + channelFileHelp,
 		Args:              atMost(1, "one profile"),
 		ValidArgsFunction: profileArguments(1),
 		RunE:              func(cmd *cobra.Command, args []string) error { return runThreshold(cmd, args, o) },
@@ -81,7 +87,7 @@ func runThreshold(cmd *cobra.Command, args []string, o *thresholdOptions) error 
 	if err != nil {
 		return err
 	}
-	answer.Warnings = append(answer.Warnings, warnings...)
+	answer.Warnings = slices.Concat(answer.Warnings, warnings, o.reader.warnings)
 	return deliver(cmd, answer)
 }
 
@@ -127,6 +133,10 @@ func thresholdAnswer(p ensembles.Profile, f channel.Family, threshold de.Thresho
 	}
 	stability := de.StabilityOf(e, f, threshold.Value)
 	answer.Stability = report.Stability{Bound: report.Finite(stability.Bound), Margin: report.Finite(stability.Margin)}
+	if best, _ := f.Range(); brief.IsMeasured(f) && threshold.Value == best {
+		answer.Warnings = append(answer.Warnings, "decoding fails on the channel as measured")
+		answer.Critical = []report.Critical{}
+	}
 	assessment, err := de.Assess(e, f, threshold)
 	if err != nil { // a design rate without a Shannon limit
 		answer.Warnings = append(answer.Warnings, err.Error())

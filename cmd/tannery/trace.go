@@ -1,6 +1,8 @@
 package main
 
 import (
+	"slices"
+
 	"github.com/spf13/cobra"
 
 	"tannery/cmd/tannery/internal/report"
@@ -35,6 +37,8 @@ tannery trace harbour.yaml --channel biawgn --parameter 0.94
 tannery trace harbour.yaml --eb-n0 0.9 --csv
 # its tunnel as a picture, for colleagues
 tannery trace harbour.yaml --parameter 0.94 --plot tunnel.svg
+# on a channel that was measured, with a tenth of its bits lost
+tannery trace harbour.yaml --channel receiver.csv --parameter 0.1
 # the (3,6) ensemble just below its threshold on the BEC
 tannery trace --lambda 3:1 --rho 6:1 --channel bec --parameter 0.4294`,
 		Long: `One row per iteration: error probability, entropy (bits) and Bhattacharyya
@@ -47,7 +51,9 @@ point (stalled), or after --iterations (undecided).
 
 With --plot a picture is written as well: the tunnel as an EXIT chart in
 entropies, the error probabilities against iterations, or the degree profile.
-At a terminal, or with --draw, the text ends with the tunnel seen from above.`,
+At a terminal, or with --draw, the text ends with the tunnel seen from above.
+
+` + channelFileHelp,
 		Args:              atMost(1, "one profile"),
 		ValidArgsFunction: profileArguments(1),
 		RunE:              func(cmd *cobra.Command, args []string) error { return runTrace(cmd, args, o) },
@@ -100,6 +106,7 @@ func runTrace(cmd *cobra.Command, args []string, o *traceOptions) error {
 	}
 	answer := traceAnswer(trace, f, p.Ensemble.DesignRate())
 	answer.Name = profileName(args)
+	answer.Warnings = slices.Concat(answer.Warnings, warnings, o.reader.warnings)
 	answer.Draw = o.draw || atTerminal(cmd)
 	if plot != nil {
 		drawing := answer.TunnelPicture()

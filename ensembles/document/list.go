@@ -6,6 +6,10 @@ import (
 	"gopkg.in/yaml.v3"
 )
 
+// IsList tells whether the value is a list, for those that may be one or a
+// single item.
+func (v Value) IsList() bool { return v.node != nil && v.node.Kind == yaml.SequenceNode }
+
 // List returns the values of a list, which may be empty. what describes the
 // list in messages.
 func (v Value) List(what string) []Value {

@@ -155,6 +155,11 @@ func (v *validator) check(rule map[string]any, value any, path string) {
 			if !slices.Contains(rule[keyword].([]any), value) {
 				refuse("is not one of %v", rule[keyword])
 			}
+		case "anyOf":
+			fits := func(option any) bool { return v.valid(option.(map[string]any), value) }
+			if !slices.ContainsFunc(rule[keyword].([]any), fits) {
+				refuse("is none of %d forms", len(rule[keyword].([]any)))
+			}
 		case "not":
 			if v.valid(rule[keyword].(map[string]any), value) {
 				refuse("is what it must not be")

@@ -21,11 +21,11 @@ func Methods() []string {
 // them than a chain of parity bits has, or as many as stability allows.
 var DegreeTwoRules = []string{"parity", "free"}
 
-// Decode reads a brief. Problems are kept for Err and Finish. If family is
-// not empty it is the channel given by an option, which wins over the file
-// and says under which key a link has its parameter.
-func Decode(name string, data []byte, family string) *Draft {
-	d := New()
+// Decode reads a brief. Problems are kept for Err and Finish. The channels
+// given by options win over the file, and the first of all says under which
+// key a link has its parameter.
+func Decode(name string, data []byte, given Channels) *Draft {
+	d := &Draft{file: map[string]document.Value{}, options: map[string]string{}}
 	d.doc = document.Parse(name, data)
 	root := d.doc.Kind("brief", 1)
 	if !root.Present() {
@@ -37,13 +37,14 @@ func Decode(name string, data []byte, family string) *Draft {
 		return v
 	}
 	d.Title = get(root, "", "title").String()
+	var channels []string
 	if v := get(root, "", "channel"); v.Present() {
-		d.Channel = v.Choice(channel.Names()...)
+		channels = decodeChannels(v)
 	}
-	if family != "" {
-		d.Channel = family
-		d.Overridden("channel", "--channel")
+	if v := get(root, "", "degradation"); v.Present() {
+		d.Degradation = v.Choice(Degradations...)
 	}
+	d.take(given, channels)
 	if v := get(root, "", "method"); v.Present() {
 		d.Method = v.Choice(Methods()...)
 	}
@@ -52,21 +53,25 @@ func Decode(name string, data []byte, family string) *Draft {
 		if d.file["rate"].Present() {
 			link.Refuse("a link beside a rate", "one of the two")
 		}
-		d.Link = decodeLink(link.Mapping(), d.Channel)
+		d.Link = decodeLink(link.Mapping(), d.family())
 	}
 	d.VariableDegrees = decodeDegrees(get(root, "", "variable_degrees"), 2)
 	d.CheckDegrees = decodeDegrees(get(root, "", "check_degrees"), 2)
 
 	limits := get(root, "", "limits").Mapping()
 	d.Iterations = get(limits, "limits.", "iterations").Int(1, MaxIterations)
+	d.TargetError = get(limits, "limits.", "target_error").Float(TargetErrors)
 	d.EdgesPerBit = get(limits, "limits.", "edges_per_bit").Float(document.AtLeast(1))
 	if v := get(limits, "limits.", "degree_two"); v.Present() {
 		d.DegreeTwo = v.Choice(DegreeTwoRules...)
 	}
+	d.DistinctDegrees = get(limits, "limits.", "distinct_degrees").Int(1, MaxDistinctDegrees)
+	d.StabilityMargin = get(limits, "limits.", "stability_margin").Float(StabilityMargins)
 
 	search := get(root, "", "search").Mapping()
 	d.Seed = get(search, "search.", "seed").Uint64()
 	d.Time = get(search, "search.", "time").Duration(time.Millisecond, MaxTime)
+	d.Evaluations = get(search, "search.", "evaluations").Int(1, MaxEvaluations)
 	d.Workers = get(search, "search.", "workers").Int(1, MaxWorkers)
 	return d
 }
@@ -97,7 +102,7 @@ func decodeDegrees(v document.Value, low int) Degrees {
 
 // decodeLink reads a link. The channel's parameter stands under its own key,
 // such as sigma; where that is a noise deviation, es_n0_db does as well.
-func decodeLink(m *document.Mapping, name string) *Link {
+func decodeLink(m *document.Mapping, family channel.Family) *Link {
 	l := &Link{
 		SourceRate:        m.Required("source_rate").Float(document.Above(0)),
 		SourceProbability: 0.5,
@@ -106,8 +111,7 @@ func decodeLink(m *document.Mapping, name string) *Link {
 	if v := m.Optional("source_probability"); v.Present() {
 		l.SourceProbability = v.Float(document.Between(0, 1))
 	}
-	family, err := channel.ByName(name)
-	if err != nil { // reported with the channel
+	if family == nil { // reported with the channel
 		m.Known(parameterKeys()...)
 		return l
 	}
@@ -117,7 +121,7 @@ func decodeLink(m *document.Mapping, name string) *Link {
 	case !db.Present():
 		l.Parameter = m.Required(family.Parameter()).Float(document.Range{Low: best, High: worst, OpenHigh: math.IsInf(worst, 1), OpenLow: true})
 	case family.Parameter() != "sigma":
-		db.Refuse("es_n0_db", family.Parameter()+" for the channel "+name)
+		db.Refuse("es_n0_db", family.Parameter()+" for the channel "+family.Name())
 	default:
 		if v := m.Optional("sigma"); v.Present() {
 			v.Refuse("sigma beside es_n0_db", "one of the two")

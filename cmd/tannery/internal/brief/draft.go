@@ -4,6 +4,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"slices"
 
 	"tannery/de/channel"
 	"tannery/ensembles"
@@ -23,8 +24,10 @@ type Draft struct {
 }
 
 // New returns an empty draft, to be filled by options alone.
-func New() *Draft {
-	return &Draft{file: map[string]document.Value{}, options: map[string]string{}}
+func New(given Channels) *Draft {
+	d := &Draft{file: map[string]document.Value{}, options: map[string]string{}}
+	d.take(given, nil)
+	return d
 }
 
 // Overridden notes that the value of a key, by its dotted path, was given by
@@ -80,14 +83,12 @@ func (d *Draft) Err() error {
 
 func (d *Draft) checkChannel() channel.Family {
 	if d.Channel == "" {
-		d.missing("channel", "--channel", listOf(channel.Names()))
-		return nil
+		d.missing("channel", "--channel", ChannelsAllowed())
 	}
-	family, err := channel.ByName(d.Channel)
-	if err != nil {
-		d.problems = append(d.problems, err)
+	if d.Degradation != "" && !slices.ContainsFunc(append([]string{d.Channel}, d.Also...), IsFile) && d.Err() == nil {
+		d.refuse("degradation", d.Degradation, "nothing, because no channel is a file")
 	}
-	return family
+	return d.family()
 }
 
 // checkRate makes sure that there is a rate, from the link if there is one.
@@ -131,6 +132,9 @@ func (d *Draft) checkDegrees() {
 	}
 	if d.EdgesPerBit > 0 && d.EdgesPerBit < float64(low) {
 		d.refuse("limits.edges_per_bit", number(d.EdgesPerBit), fmt.Sprintf("at least %d, the least variable degree", low))
+	}
+	if d.TargetError > 0 && d.Iterations == 0 {
+		d.refuse("limits.target_error", number(d.TargetError), "it beside a number of iterations")
 	}
 	if low := math.Max(2, float64(low)); low > 2 && d.DegreeTwo != "" {
 		d.refuse("limits.degree_two", d.DegreeTwo, "nothing, because degree 2 is not among the variable degrees")

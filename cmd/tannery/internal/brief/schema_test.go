@@ -19,8 +19,8 @@ rate: 0.5
 method: gaussian
 variable_degrees: {max: 15}
 check_degrees: {allowed: [7, 8]}
-limits: {iterations: 200, edges_per_bit: 4, degree_two: parity}
-search: {seed: 18446744073709551615, time: 60s, workers: 2}
+limits: {iterations: 200, target_error: 1e-5, edges_per_bit: 4, degree_two: parity, distinct_degrees: 3, stability_margin: 0.02}
+search: {seed: 18446744073709551615, time: 60s, evaluations: 9000, workers: 2}
 `
 
 // Where the decoder and the schema must agree whether a brief is valid.
@@ -44,6 +44,14 @@ func TestSchemaAgreesWithDecoder(t *testing.T) {
 		{"no version", swap("version: 1\n", ""), false},
 		{"unknown key", schemaHead + "rates: 0.5\n", false},
 		{"unknown channel", swap("biawgn", "awgn"), false},
+		{"several channels", swap("biawgn", "[biawgn, bsc]"), true},
+		{"one channel as a list", swap("biawgn", "[bsc]"), true},
+		{"no channels", swap("biawgn", "[]"), false},
+		{"channel twice", swap("biawgn", "[bsc, bsc]"), false},
+		{"unknown channel in a list", swap("biawgn", "[bsc, awgn]"), false},
+		{"channel as a number", swap("biawgn", "3"), false},
+		{"degradation", schemaHead + "degradation: flip\n", true},
+		{"unknown degradation", schemaHead + "degradation: noise\n", false},
 		{"unknown method", swap("gaussian", "guess"), false},
 		{"rate 1", swap("rate: 0.5", "rate: 1"), false},
 		{"rate as text", swap("rate: 0.5", "rate: half"), false},
@@ -59,6 +67,12 @@ func TestSchemaAgreesWithDecoder(t *testing.T) {
 		{"both forms", swap("{max: 15}", "{max: 15, allowed: [2]}"), false},
 		{"no iterations", swap("iterations: 200", "iterations: 0"), false},
 		{"too many iterations", swap("iterations: 200", "iterations: 1000001"), false},
+		{"target error 0", swap("1e-5", "0"), false},
+		{"target error of a guess", swap("1e-5", "0.5"), false},
+		{"no distinct degrees", swap("distinct_degrees: 3", "distinct_degrees: 0"), false},
+		{"stability margin 1", swap("0.02", "1"), false},
+		{"no stability margin", swap("0.02", "0"), true},
+		{"no evaluations", swap("evaluations: 9000", "evaluations: 0"), false},
 		{"too few edges", swap("edges_per_bit: 4", "edges_per_bit: 0.5"), false},
 		{"unknown rule", swap("parity", "odd"), false},
 		{"unknown limit", swap("iterations:", "iteration:"), false},
@@ -75,7 +89,7 @@ func TestSchemaAgreesWithDecoder(t *testing.T) {
 		if valid := len(problems) == 0; valid != test.valid {
 			t.Errorf("%s: the schema says valid: %v (%q), want %v", test.name, valid, problems, test.valid)
 		}
-		err = Decode("brief.yaml", []byte(test.text), "").Err()
+		err = Decode("brief.yaml", []byte(test.text), Channels{}).Err()
 		if valid := err == nil; valid != test.valid {
 			t.Errorf("%s: the decoder says valid: %v (%v), want %v", test.name, valid, err, test.valid)
 		}
@@ -97,7 +111,7 @@ func TestSchemaHasTheDecodersKeys(t *testing.T) {
 	known := map[string]bool{}
 	for path, list := range texts {
 		for _, text := range list {
-			err := Decode("b", []byte(strings.Replace(text, "?", "unheard-of", 1)), "").Err()
+			err := Decode("b", []byte(strings.Replace(text, "?", "unheard-of", 1)), Channels{}).Err()
 			m := regexp.MustCompile(`unheard-of: found an unknown key; allowed: (.*)`).FindStringSubmatch(err.Error())
 			if m == nil {
 				t.Fatalf("no unknown key in %v", err)

@@ -19,6 +19,8 @@ type Limit struct {
 	Link     *LinkAnswer   `json:"link,omitempty"`
 	Finite   *FiniteLength `json:"finite_length,omitempty"`
 
+	Warnings []string `json:"warnings"`
+
 	Symbol string `json:"-"`
 }
 
@@ -85,6 +87,9 @@ func (l *Limit) WriteText(w io.Writer) error {
 	}
 	if l.Finite != nil {
 		l.finiteText(&t)
+	}
+	for _, warning := range l.Warnings {
+		t.Row("note", "%s", warning)
 	}
 	_, err := t.WriteTo(w)
 	return err

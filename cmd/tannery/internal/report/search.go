@@ -1,7 +1,11 @@
 package report
 
 import (
+	"cmp"
+	"fmt"
 	"io"
+	"math"
+	"slices"
 	"strings"
 
 	"tannery/ensembles"
@@ -21,14 +25,26 @@ type Search struct {
 	Certificate *Certificate `json:"certificate"`
 	DegreeBound *DegreeBound `json:"degree_bound"`
 	Link        *LinkMargin  `json:"link"`
-	Threshold   *Threshold   `json:"threshold"`
+	// Thresholds are those on all channels, as asked; Threshold is the first.
+	Threshold  *Threshold   `json:"threshold"`
+	Thresholds []*Threshold `json:"thresholds"`
+	Phases     []PhaseTime  `json:"phases"`
+	Resumed    bool         `json:"resumed"` // from a checkpoint
+	Warnings   []string     `json:"warnings"`
 
 	// Tunnel is the evolution a little below the threshold; null if there is
 	// none to show.
 	Tunnel *Trace `json:"tunnel"`
 
-	Draw bool   `json:"-"` // the tunnel, at the end
-	File string `json:"-"` // where the profile went; "" for nowhere, "-" for standard output
+	Draw       bool   `json:"-"` // the tunnel, at the end
+	File       string `json:"-"` // where the profile went; "" for nowhere, "-" for standard output
+	Checkpoint string `json:"-"` // from which the search continues; "" if it does not
+}
+
+// PhaseTime is the time spent in a part of the search.
+type PhaseTime struct {
+	Phase   string  `json:"phase"`
+	Seconds float64 `json:"seconds"`
 }
 
 // Certificate proves that no λ with the same degrees and ρ has a threshold
@@ -60,7 +76,10 @@ func (r *Search) WriteText(w io.Writer) error {
 	}
 	r.Threshold.profileRows(&t)
 	t.Row("edges per code bit", "%s", Trimmed(r.EdgesPerBit, 4))
-	r.Threshold.thresholdRows(&t)
+	worst := r.byGap()[0]
+	r.channelTable(&t)
+	worst.thresholdRows(&t)
+	r.unlimitedRow(&t, worst)
 	symbol, decimals := r.Threshold.Symbol, DecimalsAt(r.Threshold.Uncertainty, 4, 7)
 	if b := r.DegreeBound; b != nil {
 		t.Row("any code and decoder", "at most %s = %s with mean check degree %s", symbol, Fixed(b.Threshold, decimals), Trimmed(b.MeanCheckDegree, 4))
@@ -82,6 +101,9 @@ func (r *Search) WriteText(w io.Writer) error {
 		evaluations = "evaluation"
 	}
 	t.Row("ended", "%s after %d %s, %s s", r.Status, r.Evaluations, evaluations, Fixed(r.Seconds, 1))
+	if phases := r.phaseText(); phases != "" {
+		t.Row("time went to", "%s", phases)
+	}
 	if c := r.Certificate; c != nil {
 		t.Row("certificate", "no λ with these degrees and this ρ does better than %s = %s by more than %s",
 			symbol, Fixed(r.Threshold.Threshold, maxDecimals), atMost(c.Above))
@@ -92,6 +114,12 @@ func (r *Search) WriteText(w io.Writer) error {
 	if r.File != "" && r.File != "-" {
 		t.Row("written to", "%s", r.File)
 	}
+	if r.Checkpoint != "" {
+		t.Row("to be continued", "from %s, by the same command", r.Checkpoint)
+	}
+	for _, warning := range r.Warnings {
+		t.Row("note", "%s", warning)
+	}
 	if r.Draw && r.Tunnel != nil {
 		r.Tunnel.Tunnel(&t)
 		t.Gap()
@@ -99,4 +127,65 @@ func (r *Search) WriteText(w io.Writer) error {
 	}
 	_, err := t.WriteTo(w)
 	return err
+}
+
+// byGap sorts the thresholds by their gap in rate, the worst first.
+func (r *Search) byGap() []*Threshold {
+	sorted := slices.Clone(r.Thresholds)
+	rate := func(t *Threshold) float64 {
+		if t.Gap == nil {
+			return math.Inf(1)
+		}
+		return t.Gap.Rate
+	}
+	slices.SortStableFunc(sorted, func(a, b *Threshold) int { return cmp.Compare(rate(b), rate(a)) })
+	return sorted
+}
+
+// channelTable sets the channels side by side, if there are several.
+func (r *Search) channelTable(t *Text) {
+	if len(r.Thresholds) < 2 {
+		return
+	}
+	t.Heading("Channels, the worst gap in rate first")
+	var rows [][]string
+	for _, c := range r.byGap() {
+		row := []string{c.Channel, c.Symbol, WithUncertainty(c.Threshold, c.Uncertainty), "", "", "", ""}
+		if c.Limit != nil && c.Gap != nil {
+			decimals := DecimalsAt(c.Uncertainty, 4, 7)
+			row[3], row[4], row[6] = Fixed(*c.Limit, decimals), Fixed(c.Gap.Parameter, decimals), Fixed(c.Gap.Rate, max(4, decimals-1))
+			if c.Gap.DB != nil {
+				row[5] = Fixed(*c.Gap.DB, 4)
+			}
+		}
+		rows = append(rows, row)
+	}
+	t.Table([]string{"channel", "", "threshold", "limit", "gap", "in dB", "in rate"}, rows)
+}
+
+// unlimitedRow tells the threshold of a decoder without a limit on iterations,
+// which is the one in the profile.
+func (r *Search) unlimitedRow(t *Text, worst *Threshold) {
+	if worst.Limited == nil {
+		return
+	}
+	for _, p := range r.Profile.Results {
+		if p.Channel == worst.Channel {
+			t.Row("without that limit", "%s = %s", worst.Symbol, WithUncertainty(p.Threshold, p.Uncertainty))
+		}
+	}
+}
+
+// leastPhase is the share of the time below which a phase is not worth a word.
+const leastPhase = 0.02
+
+// phaseText tells where the time went, for searches that took some.
+func (r *Search) phaseText() string {
+	var parts []string
+	for _, p := range r.Phases {
+		if r.Seconds >= 1 && p.Seconds >= leastPhase*r.Seconds {
+			parts = append(parts, fmt.Sprintf("%s %s s", p.Phase, Fixed(p.Seconds, 1)))
+		}
+	}
+	return strings.Join(parts, ", ")
 }

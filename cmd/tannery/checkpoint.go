@@ -1,0 +1,242 @@
+package main
+
+import (
+	"bytes"
+	"crypto/sha256"
+	"encoding/hex"
+	"encoding/json"
+	"errors"
+	"fmt"
+	"io"
+	"io/fs"
+	"os"
+	"path/filepath"
+	"sync"
+	"time"
+
+	"tannery/cmd/tannery/internal/brief"
+	"tannery/optimize"
+)
+
+// checkpointInterval is the least time between two writings of a checkpoint:
+// what a crash costs at most, beside the piece of work under way.
+const checkpointInterval = time.Second
+
+// checkpointVersion is that of the form of checkpoints.
+const checkpointVersion = 1
+
+// checkpointFile is what a checkpoint holds, as one JSON object.
+type checkpointFile struct {
+	Kind    string          `json:"kind"` // "checkpoint"
+	Version int             `json:"version"`
+	Program string          `json:"program"`
+	Brief   json.RawMessage `json:"brief"`  // what is searched for
+	Digest  string          `json:"digest"` // SHA-256 of what precedes and of State
+	State   json.RawMessage `json:"state"`  // of the search
+}
+
+// digest protects against damage.
+func (c checkpointFile) digest() string {
+	h := sha256.New()
+	for _, part := range [][]byte{[]byte(c.Kind), []byte(c.Program), c.Brief, c.State} {
+		fmt.Fprintf(h, "%d %d\n", c.Version, len(part))
+		h.Write(part)
+	}
+	return hex.EncodeToString(h.Sum(nil))
+}
+
+// checkpoint keeps the state of a search in a file: written whole or not at
+// all, at most once in checkpointInterval, by a goroutine of its own. A lock
+// beside it keeps other processes away.
+type checkpoint struct {
+	path string
+	lock *os.File
+	out  *outputFile
+	head checkpointFile // without state
+
+	mu      sync.Mutex
+	pending []byte
+	failed  error
+	wake    chan struct{}
+	stop    chan struct{}
+	done    chan struct{}
+}
+
+// openCheckpoint locks the checkpoint and returns the state in it, nil if
+// there is none yet. One that is damaged, or of another search, is refused
+// and left as it is.
+func openCheckpoint(path string, b brief.Brief, m optimize.Method) (c *checkpoint, state []byte, err error) {
+	if path == "" || path == "-" {
+		return nil, nil, usagef("--checkpoint %q: must be a file name", path)
+	}
+	c = &checkpoint{path: path, wake: make(chan struct{}, 1), stop: make(chan struct{}), done: make(chan struct{})}
+	if c.head, err = checkpointHead(b, m); err != nil {
+		return nil, nil, err
+	}
+	lock, ok, err := lockFile(path + ".lock")
+	switch {
+	case err != nil:
+		return nil, nil, outputError("--checkpoint", path, err)
+	case !ok:
+		return nil, nil, usagef("%s: found in use by another search; allowed: to wait for it, or another --checkpoint", path)
+	}
+	c.lock = lock
+	if state, err = c.read(); err == nil {
+		c.out, err = openOutput("--checkpoint", path)
+	}
+	if err != nil {
+		unlockFile(lock)
+		return nil, nil, err
+	}
+	c.sweep()
+	go c.write()
+	return c, state, nil
+}
+
+// checkpointHead identifies a search. Titles and the way to a result (time,
+// workers) do not matter.
+func checkpointHead(b brief.Brief, m optimize.Method) (checkpointFile, error) {
+	b.Title, b.Method = "", m.Name()
+	tree, err := asked(b)
+	if err != nil {
+		return checkpointFile{}, err
+	}
+	text, err := tree.MarshalJSON()
+	if err != nil {
+		return checkpointFile{}, err
+	}
+	compact, err := json.Marshal(json.RawMessage(text)) // as it will be read back
+	return checkpointFile{Kind: "checkpoint", Version: checkpointVersion, Program: program, Brief: compact}, err
+}
+
+// read returns the state in the file, nil if there is no file.
+func (c *checkpoint) read() ([]byte, error) {
+	info, err := os.Stat(c.path)
+	switch {
+	case errors.Is(err, fs.ErrNotExist):
+		return nil, nil
+	case err != nil:
+		return nil, invalid(inputError(c.path, err))
+	case !info.Mode().IsRegular():
+		return nil, usagef("--checkpoint %s: found what is no file; allowed: a file", c.path)
+	}
+	content, err := os.ReadFile(c.path)
+	if err != nil {
+		return nil, invalid(inputError(c.path, err))
+	}
+	var found checkpointFile
+	decoder := json.NewDecoder(bytes.NewReader(content))
+	decoder.DisallowUnknownFields()
+	err = decoder.Decode(&found)
+	if err == nil {
+		if _, more := decoder.Token(); more != io.EOF {
+			err = errors.New("more after its end")
+		}
+	}
+	const allowed = "allowed: that of this search, another --checkpoint, or to remove the file and start anew"
+	switch {
+	case err != nil || found.Kind != c.head.Kind:
+		return nil, usagef("%s: found no checkpoint, or a damaged one; %s", c.path, allowed)
+	case found.Version != c.head.Version || found.Program != c.head.Program:
+		return nil, usagef("%s: found the checkpoint of %s, version %d; allowed: that of %s, version %d, another --checkpoint, or to remove the file and start anew",
+			c.path, found.Program, found.Version, c.head.Program, c.head.Version)
+	case found.Digest != found.digest():
+		return nil, usagef("%s: found a damaged checkpoint, which does not match its digest; %s", c.path, allowed)
+	case !bytes.Equal(found.Brief, c.head.Brief):
+		return nil, usagef("%s: found the checkpoint of another brief or seed; %s", c.path, allowed)
+	}
+	return found.State, nil
+}
+
+// sweep removes what a crash in the middle of a writing has left. Nobody else
+// is writing, because of the lock.
+func (c *checkpoint) sweep() {
+	folder, name := filepath.Split(c.out.path)
+	entries, err := os.ReadDir(filepath.Clean(folder + "."))
+	if err != nil {
+		return
+	}
+	for _, e := range entries {
+		if left, err := filepath.Match("."+escaped(name)+".????????.tmp", e.Name()); err == nil && left {
+			os.Remove(filepath.Join(folder, e.Name()))
+		}
+	}
+}
+
+// escaped protects a name from filepath.Match.
+func escaped(name string) string {
+	var b bytes.Buffer
+	for _, r := range name {
+		switch r {
+		case '*', '?', '[', '\\':
+			b.WriteByte('\\')
+		}
+		b.WriteRune(r)
+	}
+	return b.String()
+}
+
+// keep takes a state to be written soon. It is optimize.Settings.Checkpoint.
+func (c *checkpoint) keep(state []byte) {
+	c.mu.Lock()
+	c.pending = state
+	c.mu.Unlock()
+	select {
+	case c.wake <- struct{}{}:
+	default:
+	}
+}
+
+// write writes what is pending until the checkpoint is closed.
+func (c *checkpoint) write() {
+	defer close(c.done)
+	for {
+		select {
+		case <-c.wake:
+			c.store()
+		case <-c.stop:
+			c.store()
+			return
+		}
+		select {
+		case <-time.After(checkpointInterval):
+		case <-c.stop:
+			c.store()
+			return
+		}
+	}
+}
+
+// store writes what is pending, if anything.
+func (c *checkpoint) store() {
+	c.mu.Lock()
+	state := c.pending
+	c.pending = nil
+	c.mu.Unlock()
+	if state == nil {
+		return
+	}
+	file := c.head
+	file.State = state
+	file.Digest = file.digest()
+	content, err := json.Marshal(file)
+	if err == nil {
+		err = c.out.write(append(content, '\n'))
+	}
+	c.failed = err
+}
+
+// close writes what is pending and gives the lock back; with the search done,
+// the file is removed. The error is that of the last writing.
+func (c *checkpoint) close(done bool) error {
+	if c == nil {
+		return nil
+	}
+	close(c.stop)
+	<-c.done
+	if done {
+		os.Remove(c.out.path)
+	}
+	unlockFile(c.lock)
+	return c.failed
+}
