@@ -12,6 +12,7 @@ import (
 
 	"github.com/spf13/cobra"
 
+	"tannery/cmd/tannery/internal/brief"
 	"tannery/cmd/tannery/internal/report"
 	"tannery/de"
 	"tannery/de/channel"
@@ -28,17 +29,18 @@ const compareIterations = 10_000
 
 type compareOptions struct {
 	methodOption
-	channels namesOption
-	distance numberOption
-	sort     nameOption
-	workers  integerOption
-	csv      bool
+	channels    channelsOption
+	degradation nameOption
+	reader      channelReader
+	distance    numberOption
+	sort        nameOption
+	workers     integerOption
+	csv         bool
 	pictureOption
 }
 
 func newCompare() *cobra.Command {
 	o := &compareOptions{
-		channels:      namesOption{names: channel.Names()},
 		distance:      numberOption{allow: document.Between(0, 1), value: 0.05},
 		sort:          nameOption{names: []string{"gap", "threshold", "edges", "iterations", "name", "none"}, value: "gap"},
 		workers:       integerOption{low: 1, high: 1024},
@@ -64,12 +66,16 @@ threshold: at the parameter (1 - distance) times the threshold, by default
 
 Rows are sorted by the gap unless --sort says otherwise. With --plot a picture
 is written as well: thresholds against edges per code bit, or gaps against the
-largest degree.`,
+largest degree.
+
+` + channelFileHelp,
 		ValidArgsFunction: profileArguments(0),
 		RunE:              func(cmd *cobra.Command, args []string) error { return runCompare(cmd, args, o) },
 	}
-	cmd.Flags().Var(&o.channels, "channel", "channels, with commas between them; by default those that the profiles' results share")
-	complete(cmd, "channel", o.channels.names)
+	o.reader.cmd = cmd
+	cmd.Flags().Var(&o.channels, "channel", "channels, with commas between them, files among them; by default those that the profiles' results share")
+	completeChannel(cmd)
+	addDegradation(cmd, &o.degradation)
 	o.addMethod(cmd)
 	cmd.Flags().Var(&o.distance, "distance", "how far below the threshold iterations are counted, as a share of it; 0.05 if not given")
 	cmd.Flags().Var(&o.sort, "sort", "gap, threshold, edges, iterations, name or none (as given); gap if not given")
@@ -90,7 +96,7 @@ func runCompare(cmd *cobra.Command, args []string, o *compareOptions) error {
 	profiles := make([]ensembles.Profile, len(args))
 	var errs []error
 	for i, argument := range args {
-		if argument == "-" && slices.Contains(args[:i], "-") {
+		if argument == "-" && (slices.Contains(args[:i], "-") || slices.Contains(o.channels.values, "-")) {
 			errs = append(errs, usagef("-: standard input can be read once only"))
 			continue
 		}
@@ -152,9 +158,9 @@ func runCompare(cmd *cobra.Command, args []string, o *compareOptions) error {
 // families returns the channels asked for, or else those that the results of
 // all profiles name.
 func (o *compareOptions) families(profiles []ensembles.Profile) ([]channel.Family, error) {
-	chosen := o.channels.chosen
+	chosen := o.channels.values
 	if len(chosen) == 0 {
-		for _, name := range o.channels.names {
+		for _, name := range channel.Names() {
 			shared := true
 			for _, p := range profiles {
 				shared = shared && slices.ContainsFunc(p.Results, func(r ensembles.Result) bool { return r.Channel == name })
@@ -165,11 +171,14 @@ func (o *compareOptions) families(profiles []ensembles.Profile) ([]channel.Famil
 		}
 	}
 	if len(chosen) == 0 {
-		return nil, usagef("--channel: missing, and the profiles' results share none; allowed: %s", listOf(o.channels.names))
+		return nil, usagef("--channel: missing, and the profiles' results share none; allowed: %s", brief.ChannelsAllowed())
+	}
+	if o.degradation.value != "" && !slices.ContainsFunc(chosen, brief.IsFile) {
+		return nil, usagef("--degradation: found %s; allowed: nothing, because no channel is from a file", o.degradation.value)
 	}
 	families := make([]channel.Family, len(chosen))
 	for i, name := range chosen {
-		f, err := channel.ByName(name)
+		f, err := o.reader.find(name, o.degradation.value)
 		if err != nil {
 			return nil, invalid(err)
 		}
@@ -298,29 +307,3 @@ func iterationsOf(r report.CompareRow) int {
 	}
 	return *r.Iterations
 }
-
-// namesOption is a list of different names with commas between them.
-type namesOption struct {
-	chosen []string
-	names  []string
-}
-
-// Set reads the list; a second option adds to the first.
-func (o *namesOption) Set(text string) error {
-	for _, item := range strings.Split(text, ",") {
-		one := nameOption{names: o.names}
-		if err := one.Set(strings.TrimSpace(item)); err != nil {
-			return err
-		}
-		if !slices.Contains(o.chosen, one.value) {
-			o.chosen = append(o.chosen, one.value)
-		}
-	}
-	return nil
-}
-
-// Type names the value in help texts.
-func (o *namesOption) Type() string { return "NAME,…" }
-
-// String returns the default, which is none.
-func (o *namesOption) String() string { return "" }

@@ -91,22 +91,35 @@ func TestCompareAgreesWithOtherCommands(t *testing.T) {
 
 func TestCompareRefuses(t *testing.T) {
 	for args, want := range map[string]string{
-		"compare":                                     "profile: missing; allowed: one or more files, names of the catalogue, and - for standard input once",
-		"compare - - --channel bec":                   "-: standard input can be read once only",
-		"compare ru01-r50-d3 --channel bec,bcs":       `--channel: found "bec,bcs"; allowed: bec, bsc, biawgn, laplace or rayleigh; did you mean bec?`,
-		"compare 80211n-r50-d11":                      "--channel: missing, and the profiles' results share none; allowed: bec, bsc, biawgn, laplace or rayleigh",
-		"compare ru01-r50-d3 --distance 1":            `--distance: found "1"; allowed: a number above 0 and below 1`,
-		"compare s99-r50-d13 --plot x.gif":            `--plot: found "x.gif"; allowed: a file name that ends in .svg or .png`,
-		"compare s99-r50-d13 --picture gaps":          "--picture: needs --plot beside it",
-		"compare ru01-r50-d3 --csv --json":            "--csv and --json: only one of the two",
-		"compare ru01-r50-d3 --plot x.svg":            "--plot: a picture shows one channel; allowed: one --channel beside it",
-		"catalog rsu01-r50-d4 --rate 0.5":             "--rate: for the list only; allowed: it, or rsu01-r50-d4",
-		"trace ru01-r50-d3 --channel bec --plot .svg": "--parameter: missing; allowed: it, --eb-n0 or --es-n0",
+		"compare":                                              "profile: missing; allowed: one or more files, names of the catalogue, and - for standard input once",
+		"compare - - --channel bec":                            "-: standard input can be read once only",
+		"compare ru01-r50-d3 --channel bec,bcs":                `--channel: found "bec,bcs"; allowed: bec, bsc, biawgn, laplace, rayleigh, or a file with . or / in its name; did you mean bec?`,
+		"compare 80211n-r50-d11":                               "--channel: missing, and the profiles' results share none; allowed: bec, bsc, biawgn, laplace, rayleigh, or a file with . or / in its name",
+		"compare - --channel bec,-":                            "-: standard input can be read once only",
+		"compare ru01-r50-d3 --channel bec --degradation flip": "--degradation: found flip; allowed: nothing, because no channel is from a file",
+		"compare ru01-r50-d3 --distance 1":                     `--distance: found "1"; allowed: a number above 0 and below 1`,
+		"compare s99-r50-d13 --plot x.gif":                     `--plot: found "x.gif"; allowed: a file name that ends in .svg or .png`,
+		"compare s99-r50-d13 --picture gaps":                   "--picture: needs --plot beside it",
+		"compare ru01-r50-d3 --csv --json":                     "--csv and --json: only one of the two",
+		"compare ru01-r50-d3 --plot x.svg":                     "--plot: a picture shows one channel; allowed: one --channel beside it",
+		"catalog rsu01-r50-d4 --rate 0.5":                      "--rate: for the list only; allowed: it, or rsu01-r50-d4",
+		"trace ru01-r50-d3 --channel bec --plot .svg":          "--parameter: missing; allowed: it, --eb-n0 or --es-n0",
 	} {
 		t.Chdir(t.TempDir())
 		code, stdout, stderr := command(t, "", strings.Fields(args)...)
 		if lines := strings.Split(stderr, "\n"); code != exitUsage || stdout != "" || lines[len(lines)-2] != "tannery: "+want {
 			t.Errorf("tannery %s: code %d, stdout %q, stderr %q; want %q", args, code, stdout, stderr, want)
 		}
+	}
+}
+
+// A channel from a file stands beside named ones.
+func TestCompareOnMeasuredChannel(t *testing.T) {
+	records, err := csv.NewReader(strings.NewReader(succeed(t, "", strings.Fields("compare ru01-r25-d3 rsu01-r50-d4 --channel bec,../../testdata/channels/receiver.csv --csv")...))).ReadAll()
+	if err != nil {
+		t.Fatal(err)
+	}
+	if len(records) != 5 || records[1][1] != "bec" || records[3][1] != "receiver" || records[3][2] != "epsilon" || records[3][7] == "" {
+		t.Errorf("%v", records)
 	}
 }

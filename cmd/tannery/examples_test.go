@@ -5,6 +5,7 @@ import (
 	"io"
 	"os"
 	"path/filepath"
+	"slices"
 	"strings"
 	"testing"
 
@@ -66,6 +67,10 @@ func (s shell) command(line, stdin string) string {
 	if words[0] != "tannery" {
 		s.t.Errorf("%s: no such program", line)
 		return ""
+	}
+	if len(words) > 1 && words[1] == "search" && !slices.Contains(words, "--help") {
+		// Long enough to find something; that searches end is tested elsewhere.
+		words = append(words, "--time", "2s")
 	}
 	var stdout, stderr bytes.Buffer
 	if code := run(s.t.Context(), words[1:], strings.NewReader(stdin), io.Writer(&stdout), &stderr); code != exitDone {
