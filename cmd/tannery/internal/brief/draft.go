@@ -67,6 +67,7 @@ func (d *Draft) Finish() (Brief, error) {
 	family := d.checkChannel()
 	d.checkRate(family)
 	if d.Err() == nil {
+		d.checkCapacities()
 		d.checkDegrees()
 	}
 	return d.Brief, d.Err()
@@ -103,6 +104,16 @@ func (d *Draft) checkRate(family channel.Family) {
 		if !(d.Rate < capacity) {
 			d.refuse("link", fmt.Sprintf("a source of %.6g bits of entropy per channel symbol", d.Rate),
 				fmt.Sprintf("less than the channel's capacity, %.6g bits per symbol at %s = %.6g", capacity, family.Symbol(), l.Parameter))
+		}
+	}
+}
+
+// checkCapacities refuses rates beyond the capacity of a channel as measured.
+func (d *Draft) checkCapacities() {
+	for _, f := range d.Families {
+		best, _ := f.Range()
+		if capacity := f.Capacity(best); IsMeasured(f) && d.Rate >= capacity {
+			d.refuse("rate", number(d.Rate), fmt.Sprintf("less than %.6g, the capacity of %s as measured", capacity, f.Name()))
 		}
 	}
 }
