@@ -60,7 +60,7 @@ func (c *CheckNode) Apply(dst, src *Density) {
 	// what comes of the erased messages: exactly so without the rounding
 	// that undamping brings.
 	erased := 1 - c.polynomial.at(1-src.even[0])
-	if lost := 1 - known - erased; lost > roundingLoss {
+	if lost := 1 - known - erased; math.Abs(lost) > roundingLoss {
 		erased += lost
 	}
 	dst.even[0] += erased
@@ -72,7 +72,7 @@ func (c *CheckNode) Apply(dst, src *Density) {
 const negligible = 1e-13
 
 // roundingLoss is the largest mass that rounding under the damping factor may
-// lose on the coarsest level; a smaller loss does not count as erased.
+// lose, or add, on the coarsest level; that little does not count as erased.
 const roundingLoss = 1e-9
 
 // complexView reads a real sequence of even length as one of half as many

@@ -72,7 +72,10 @@ func (d *Density) Bhattacharyya() float64 {
 }
 
 // ErrorProbability returns that of a decision by the message's sign, an
-// erased message counted half.
+// erased message counted half. It holds to fourth order in the step for
+// messages whose density is smooth near magnitude 0, as those from variable
+// nodes are; to second order for channels projected, and to first order in the
+// mass of atoms nearer to 0 than three steps.
 func (d *Density) ErrorProbability() float64 { return dot(d.grid.errorWeight, d.even) }
 
 // Entropy returns that of the bit given the message, in bits; 1 minus it is

@@ -64,7 +64,7 @@ func (p *plainStep) check(dst, src *Density) {
 	for _, t := range p.rho {
 		erased -= t.Fraction * math.Pow(1-src.even[0], float64(t.Degree-1))
 	}
-	if lost := 1 - known - erased; lost > roundingLoss {
+	if lost := 1 - known - erased; math.Abs(lost) > roundingLoss {
 		erased += lost
 	}
 	dst.even[0] += erased
