@@ -21,7 +21,7 @@ func TestGridShape(t *testing.T) {
 		tolerance float64 // of Bhattacharyya parameter and entropy
 	}
 	variants := []variant{
-		{"twice the reach", 2 * points, func(s *shape) { s.reach *= 2; s.cells /= 2 }, 3e-8},
+		{"twice the reach", 2 * points, func(s *shape) { s.reach *= 2; s.cells /= 2 }, 1e-7},
 		{"twice the range of u", points, func(s *shape) { s.top *= 2; s.cells *= 2; s.count++ }, 1e-7},
 		{"two levels more", points, func(s *shape) { s.count += 2 }, 1e-7},
 		{"less damping", points, func(s *shape) { s.damping -= 2 }, 2e-6},
