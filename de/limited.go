@@ -26,6 +26,16 @@ const (
 	limitedSteps = 200
 )
 
+const (
+	// limitedPoints is the number of points of the finer of the two grids on
+	// which Limited evolves quantised densities.
+	limitedPoints = 1024
+	// limitedGain is by how much the difference of the two is widened: small
+	// error probabilities settle slowly, at first by less than half from one
+	// grid to the next. TestLimitedUncertainty holds it against finer grids.
+	limitedGain = 2
+)
+
 // Limited returns the largest channel parameter at which the bit error
 // probability reaches the target in at most the given number of iterations,
 // as the length goes to infinity: the threshold of a decoder that stops there.
@@ -37,7 +47,28 @@ const (
 // Urbanke, IEEE Trans. Inf. Theory 47(2), 2001). The root of its logarithm is
 // found by the Illinois rule (Dowell & Jarratt, BIT 11, 1971), safeguarded by
 // bisection. Iterations of the result counts the evolution steps.
+//
+// Quantised densities are evolved on two grids, and the uncertainty covers
+// their difference.
 func Limited(ctx context.Context, engine Engine, e ensembles.Ensemble, f channel.Family, iterations int, target float64) (Threshold, error) {
+	q, quantized := engine.(QuantizedEngine)
+	if !quantized {
+		return limitedBy(ctx, engine, e, f, iterations, target)
+	}
+	q.tracePoints = limitedPoints / 2
+	coarse, err := limitedBy(ctx, q, e, f, iterations, target)
+	if err != nil {
+		return coarse, err
+	}
+	q.tracePoints = limitedPoints
+	fine, err := limitedBy(ctx, q, e, f, iterations, target)
+	fine.Uncertainty += limitedGain*math.Abs(fine.Value-coarse.Value) + gridError(limitedPoints)*fine.Value
+	fine.Iterations += coarse.Iterations
+	return fine, err
+}
+
+// limitedBy is Limited by the traces of one engine.
+func limitedBy(ctx context.Context, engine Engine, e ensembles.Ensemble, f channel.Family, iterations int, target float64) (Threshold, error) {
 	if iterations < 1 {
 		return Threshold{}, fmt.Errorf("iterations %d: must be at least 1", iterations)
 	}

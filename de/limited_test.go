@@ -112,3 +112,37 @@ type uncorrected struct{ ExactEngine }
 func (uncorrected) Trace(context.Context, ensembles.Ensemble, channel.Family, float64, int) (Trace, error) {
 	return Trace{Points: []Point{{}, {Iteration: 1, BitErrorProbability: .01}}}, nil
 }
+
+// On finer grids the threshold lies within the uncertainty, also where small
+// error probabilities are asked for, which settle last.
+func TestLimitedUncertainty(t *testing.T) {
+	ctx := context.Background()
+	irregular := ensembles.Ensemble{
+		Lambda: ensembles.Distribution{{Degree: 2, Fraction: 0.25}, {Degree: 3, Fraction: 0.21}, {Degree: 5, Fraction: 0.14}, {Degree: 15, Fraction: 0.4}},
+		Rho:    ensembles.Distribution{{Degree: 8, Fraction: 1}},
+	}
+	for _, c := range []struct {
+		e          ensembles.Ensemble
+		f          channel.Family
+		iterations int
+		target     float64
+	}{
+		{ensembles.Regular(3, 6), channel.BIAWGN{}, 20, 1e-6},
+		{ensembles.Regular(3, 6), channel.BIAWGN{}, 3, 1e-2},
+		{ensembles.Regular(3, 60), channel.Rayleigh{}, 10, 1e-5},
+		{irregular, channel.BSC{}, 30, 1e-6},
+		{irregular, channel.Laplace{}, 60, 1e-9},
+	} {
+		got, err := Limited(ctx, QuantizedEngine{}, c.e, c.f, c.iterations, c.target)
+		if err != nil {
+			t.Fatal(err)
+		}
+		finer, err := limitedBy(ctx, QuantizedEngine{tracePoints: 4096}, c.e, c.f, c.iterations, c.target)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if d := math.Abs(got.Value - finer.Value); d > got.Uncertainty || got.Uncertainty > 2e-3*got.Value {
+			t.Errorf("%s, %d iterations to %g: %.9g ± %.2g, but %.9g on a finer grid", c.f.Name(), c.iterations, c.target, got.Value, got.Uncertainty, finer.Value)
+		}
+	}
+}

@@ -17,6 +17,8 @@ type QuantizedEngine struct {
 	// 0 means DefaultTolerance. Finer grids are taken until it is reached
 	// or the grid has 4096 points.
 	Tolerance float64
+
+	tracePoints int // of the grid of traces; 0 for the constant of that name
 }
 
 var _ Engine = QuantizedEngine{}

@@ -1,6 +1,7 @@
 package de
 
 import (
+	"cmp"
 	"context"
 
 	"tannery/de/channel"
@@ -22,7 +23,7 @@ func (q QuantizedEngine) Trace(ctx context.Context, e ensembles.Ensemble, f chan
 	if err := checkParameter(f, parameter); err != nil {
 		return Trace{}, err
 	}
-	grid, err := density.NewGrid(tracePoints)
+	grid, err := density.NewGrid(cmp.Or(q.tracePoints, tracePoints))
 	if err != nil {
 		return Trace{}, err
 	}
