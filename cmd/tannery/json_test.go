@@ -12,6 +12,7 @@ import (
 func TestJSONKeys(t *testing.T) {
 	const (
 		thresholdKeys = "schema channel parameter method threshold uncertainty design_rate limit gap eb_n0_db es_n0_db stability iterations warnings"
+		searchKeys    = "schema profile profile.results status evaluations seconds programmes edges_per_bit binding relaxations phases thresholds threshold resumed warnings"
 		limitKeys     = "schema channel parameter value rate eb_n0_db es_n0_db"
 	)
 	for _, c := range []struct{ args, schema, keys string }{
@@ -19,6 +20,12 @@ func TestJSONKeys(t *testing.T) {
 		{"threshold --lambda 3:1 --rho 6:1 --channel biawgn --method gaussian", "tannery/threshold/1", thresholdKeys},
 		{"threshold --lambda 1:0.5,3:0.5 --rho 6:1 --channel bec", "tannery/threshold/1", thresholdKeys},
 		{"threshold --lambda 3:1 --rho 3:1 --channel bec", "tannery/threshold/1", thresholdKeys},
+		{"threshold --lambda 3:1 --rho 6:1 --channel bsc --iterations 9 --target-error 1e-3", "tannery/threshold/1", thresholdKeys + " limited.iterations limited.target_error"},
+		{"threshold --lambda 3:1 --rho 6:1 --channel ../../testdata/channels/receiver.csv", "tannery/threshold/1", thresholdKeys},
+		{"search --channel bec --rate 0.5 --max-variable-degree 4", "tannery/search/1", searchKeys},
+		{"search --channel biawgn,bsc --rate 0.5 --variable-degrees 2,4 --check-degrees 6 --evaluations 5", "tannery/search/1", searchKeys},
+		{"limit --channel ../../testdata/channels/receiver.csv --rate 0.4", "tannery/limit/1", limitKeys + " warnings"},
+		{"trace --lambda 3:1 --rho 6:1 --channel laplace --parameter 0.5 --iterations 9", "tannery/trace/1", "schema channel parameter value method outcome narrowest points warnings"},
 		{"limit --channel biawgn --rate 0.5", "tannery/limit/1", limitKeys},
 		{"limit --channel bsc --parameter 0.11", "tannery/limit/1", limitKeys},
 		{"limit --channel bsc --parameter 0.5", "tannery/limit/1", limitKeys},

@@ -302,6 +302,7 @@ func searchAnswer(b brief.Brief, p ensembles.Profile, r optimize.Result) *report
 		EdgesPerBit: r.Ensemble.EdgesPerBit(),
 		Binding:     append([]string{}, r.Binding...),
 		Phases:      []report.PhaseTime{},
+		Relaxations: []report.Relaxation{},
 		Warnings:    []string{},
 	}
 	for _, phase := range r.Stats.Seconds {

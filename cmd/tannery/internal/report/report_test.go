@@ -97,3 +97,22 @@ func TestThinKeepsEndsAndTheNarrowest(t *testing.T) {
 		}
 	}
 }
+
+// Limits that bind are named once, with their relaxation where it is known.
+func TestBindingRows(t *testing.T) {
+	r := Search{
+		Threshold:   &Threshold{Symbol: "σ"},
+		Binding:     []string{"variable degrees", "iterations", "edges per bit"},
+		Relaxations: []Relaxation{{"variable degrees", "also degree 9", 0.00123}, {"edges per bit", "3.5", 4e-5}},
+	}
+	var text Text
+	r.bindingRows(&text)
+	const want = "  kept down by            iterations\n" +
+		"                          variable degrees: also degree 9 would gain about\n" +
+		"                          0.0012 in σ\n" +
+		"                          edges per bit: 3.5 would gain about 4e-05 in σ\n"
+	var b strings.Builder
+	if _, err := text.WriteTo(&b); err != nil || b.String() != want {
+		t.Errorf("%v\n%s", err, b.String())
+	}
+}

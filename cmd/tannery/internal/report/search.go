@@ -29,8 +29,10 @@ type Search struct {
 	Threshold  *Threshold   `json:"threshold"`
 	Thresholds []*Threshold `json:"thresholds"`
 	Phases     []PhaseTime  `json:"phases"`
-	Resumed    bool         `json:"resumed"` // from a checkpoint
-	Warnings   []string     `json:"warnings"`
+	// Relaxations say of limits in Binding what relaxing them would gain.
+	Relaxations []Relaxation `json:"relaxations"`
+	Resumed     bool         `json:"resumed"` // from a checkpoint
+	Warnings    []string     `json:"warnings"`
 
 	// Tunnel is the evolution a little below the threshold; null if there is
 	// none to show.
@@ -39,6 +41,13 @@ type Search struct {
 	Draw       bool   `json:"-"` // the tunnel, at the end
 	File       string `json:"-"` // where the profile went; "" for nowhere, "-" for standard output
 	Checkpoint string `json:"-"` // from which the search continues; "" if it does not
+}
+
+// Relaxation is what a little more freedom in a limit would gain.
+type Relaxation struct {
+	Limit string  `json:"limit"`
+	To    string  `json:"to"`   // what it is relaxed to, in words
+	Gain  float64 `json:"gain"` // of the threshold on the first channel, as predicted
 }
 
 // PhaseTime is the time spent in a part of the search.
@@ -108,9 +117,7 @@ func (r *Search) WriteText(w io.Writer) error {
 		t.Row("certificate", "no λ with these degrees and this ρ does better than %s = %s by more than %s",
 			symbol, Fixed(r.Threshold.Threshold, maxDecimals), atMost(c.Above))
 	}
-	if len(r.Binding) > 0 {
-		t.Row("kept down by", "%s", strings.Join(r.Binding, ", "))
-	}
+	r.bindingRows(&t)
 	if r.File != "" && r.File != "-" {
 		t.Row("written to", "%s", r.File)
 	}
@@ -188,4 +195,24 @@ func (r *Search) phaseText() string {
 		}
 	}
 	return strings.Join(parts, ", ")
+}
+
+// bindingRows names the limits that bind, each with what relaxing it would
+// gain where that is known.
+func (r *Search) bindingRows(t *Text) {
+	var plain []string
+	for _, limit := range r.Binding {
+		if !slices.ContainsFunc(r.Relaxations, func(x Relaxation) bool { return x.Limit == limit }) {
+			plain = append(plain, limit)
+		}
+	}
+	label := "kept down by"
+	if len(plain) > 0 {
+		t.Row(label, "%s", strings.Join(plain, ", "))
+		label = ""
+	}
+	for _, x := range r.Relaxations {
+		t.Row(label, "%s: %s would gain about %s in %s", x.Limit, x.To, Significant(x.Gain, 2), r.Threshold.Symbol)
+		label = ""
+	}
 }
