@@ -149,6 +149,20 @@ func TestCheckpointElsewhere(t *testing.T) {
 	}
 }
 
+// A search that has settled is done, also where its profile is not enough for
+// the link.
+func TestCheckpointOfUnreachedLink(t *testing.T) {
+	const text = "kind: brief\nversion: 1\nchannel: biawgn\nlink: {source_rate: 1, symbol_rate: 2, sigma: 0.95}\nvariable_degrees: {allowed: [2, 4]}\ncheck_degrees: {allowed: [6]}\n"
+	folder := t.TempDir()
+	code, _, stderr := command(t, text, "search", "-", "-o", filepath.Join(folder, "best.yaml"))
+	if code != exitUnreached {
+		t.Errorf("code %d, %s", code, stderr)
+	}
+	if found := names(t, folder); found != "best.yaml" {
+		t.Errorf("left behind: %s", found)
+	}
+}
+
 // Checkpoints that are damaged or of another search are refused, and neither
 // they nor the profile beside them are touched.
 func TestCheckpointsAreRefused(t *testing.T) {

@@ -75,7 +75,7 @@ the search has settled and the profile is written.
 	return cmd
 }
 
-func runSearch(cmd *cobra.Command, args []string, o *searchOptions) (err error) {
+func runSearch(cmd *cobra.Command, args []string, o *searchOptions) error {
 	b, err := o.brief(cmd, args)
 	if err != nil {
 		return err
@@ -92,9 +92,9 @@ func runSearch(cmd *cobra.Command, args []string, o *searchOptions) (err error) 
 	if err != nil {
 		return err
 	}
-	settled := false
+	done := false
 	defer func() {
-		if failed := kept.close(settled && err == nil); failed != nil {
+		if failed := kept.close(done); failed != nil {
 			warn(cmd, []string{failed.Error()})
 		}
 	}()
@@ -130,13 +130,14 @@ func runSearch(cmd *cobra.Command, args []string, o *searchOptions) (err error) 
 	answer.Warnings = append(answer.Warnings, o.reader.warnings...)
 	answer.Tunnel = tunnelAt(cmd.Context(), result.Ensemble, family, result.Threshold, nil)
 	answer.Draw = atTerminal(cmd)
-	settled = result.Status == optimize.Settled
+	settled := result.Status == optimize.Settled
 	if kept != nil && !settled {
 		answer.Checkpoint = kept.path
 	}
 	if err := out.deliver(p, answer); err != nil {
 		return err
 	}
+	done = settled
 	if result.Status == optimize.Interrupted {
 		return context.Cause(cmd.Context())
 	}
