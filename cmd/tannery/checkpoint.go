@@ -124,10 +124,15 @@ func (c *checkpoint) read() ([]byte, error) {
 	if err != nil {
 		return nil, invalid(inputError(c.path, err))
 	}
+	return c.decode(content)
+}
+
+// decode returns the state in a checkpoint of this search.
+func (c *checkpoint) decode(content []byte) ([]byte, error) {
 	var found checkpointFile
 	decoder := json.NewDecoder(bytes.NewReader(content))
 	decoder.DisallowUnknownFields()
-	err = decoder.Decode(&found)
+	err := decoder.Decode(&found)
 	if err == nil {
 		if _, more := decoder.Token(); more != io.EOF {
 			err = errors.New("more after its end")
@@ -144,6 +149,13 @@ func (c *checkpoint) read() ([]byte, error) {
 		return nil, usagef("%s: found a damaged checkpoint, which does not match its digest; %s", c.path, allowed)
 	case !bytes.Equal(found.Brief, c.head.Brief):
 		return nil, usagef("%s: found the checkpoint of another brief or seed; %s", c.path, allowed)
+	}
+	// Keys twice or in capitals, which the decoder lets pass, were not written
+	// by this program either.
+	again, err := c.encode(found.State)
+	var compact bytes.Buffer
+	if err != nil || json.Compact(&compact, content) != nil || !bytes.Equal(bytes.TrimSpace(again), compact.Bytes()) {
+		return nil, usagef("%s: found no checkpoint, or a damaged one; %s", c.path, allowed)
 	}
 	return found.State, nil
 }
@@ -216,14 +228,20 @@ func (c *checkpoint) store() {
 	if state == nil {
 		return
 	}
+	content, err := c.encode(state)
+	if err == nil {
+		err = c.out.write(content)
+	}
+	c.failed = err
+}
+
+// encode is the inverse of decode.
+func (c *checkpoint) encode(state []byte) ([]byte, error) {
 	file := c.head
 	file.State = state
 	file.Digest = file.digest()
 	content, err := json.Marshal(file)
-	if err == nil {
-		err = c.out.write(append(content, '\n'))
-	}
-	c.failed = err
+	return append(content, '\n'), err
 }
 
 // close writes what is pending and gives the lock back; with the search done,

@@ -2,6 +2,7 @@ package main
 
 import (
 	"bytes"
+	"encoding/json"
 	"math/rand/v2"
 	"os"
 	"path/filepath"
@@ -9,6 +10,9 @@ import (
 	"syscall"
 	"testing"
 	"time"
+
+	"tannery/cmd/tannery/internal/brief"
+	"tannery/optimize"
 )
 
 // resumableSearch takes some two seconds, in a hundred pieces of work.
@@ -193,6 +197,7 @@ func TestCheckpointsAreRefused(t *testing.T) {
 		{"one digit of the state", swap(`"Phase":1`, `"Phase":2`), "", damaged},
 		{"something behind it", append(bytes.Clone(good), "{}"...), "", none},
 		{"unknown key", swap(`{"kind"`, `{"state2":1,"kind"`), "", none},
+		{"a key twice", swap(`{"kind"`, `{"version":1,"kind"`), "", none},
 		{"a profile", profile, "", none},
 		{"text", []byte("not written by the program\n"), "", none},
 		{"another program", swap(program, "tannery 9.9.9"), "", "found the checkpoint of tannery 9.9.9, version 1; allowed: that of " + program + ", version 1, " + anew},
@@ -280,4 +285,35 @@ func TestCheckpointOptions(t *testing.T) {
 			t.Errorf("tannery %s\ncode %d, stdout %q\n got %swant tannery: %s", args, code, stdout, stderr, want)
 		}
 	}
+}
+
+// Whatever is accepted is what was written, byte for byte but for spaces.
+func FuzzCheckpoint(f *testing.F) {
+	head, err := checkpointHead(brief.Brief{Channel: "bsc", Rate: 0.5}, optimize.QuantizedDesign{})
+	if err != nil {
+		f.Fatal(err)
+	}
+	c := &checkpoint{path: "state", head: head}
+	good, err := c.encode([]byte(`{"Format":1,"Points":[{"Gap":0.25}]}`))
+	if err != nil {
+		f.Fatal(err)
+	}
+	if state, err := c.decode(good); err != nil || len(state) == 0 {
+		f.Fatalf("%s, %v", state, err)
+	}
+	f.Add(good)
+	f.Add(good[:len(good)/2])
+	f.Add([]byte(`{"kind":"checkpoint","version":1}`))
+	f.Add([]byte("kind: checkpoint"))
+	f.Fuzz(func(t *testing.T, content []byte) {
+		state, err := c.decode(content)
+		if err != nil {
+			return
+		}
+		again, err := c.encode(state)
+		var a, b bytes.Buffer
+		if err != nil || json.Compact(&a, again) != nil || json.Compact(&b, content) != nil || a.String() != b.String() {
+			t.Errorf("accepted %s, which is written as %s", content, again)
+		}
+	})
 }
