@@ -49,6 +49,10 @@ type journey struct {
 	Evolved  int      // evolutions so far
 	Solved   int      // linear programmes
 	Improved int      // exchanges made
+
+	// Unlimited is the threshold on the first channel before degrees were
+	// dropped, 0 if none were.
+	Unlimited float64
 }
 
 // journeyFormat is the version of what is written down.
@@ -108,6 +112,7 @@ func (q QuantizedDesign) search(ctx context.Context, p Problem, r *run) error {
 			return err
 		}
 		r.stats.Evaluations, r.stats.Programmes = j.Evolved, j.Solved
+		r.unlimited = j.Unlimited
 		j.adopt(p, r, j.Best)
 		for _, at := range j.Points {
 			j.adopt(p, r, at)
@@ -200,7 +205,9 @@ func (j *journey) advance(ctx context.Context, p Problem, r *run) error {
 		}
 		j.again(freeing, r)
 	case freeing:
-		j.Best = best
+		if best != nil {
+			j.Best = best
+		}
 		j.again(polishing, r)
 	case polishing:
 		if best != nil {
@@ -227,6 +234,10 @@ func (j *journey) choose(ctx context.Context, p Problem, r *run) {
 		return
 	case len(used) > limit:
 		next = dropping
+		if j.Phase == refining {
+			j.Unlimited = j.Best.Thresholds[0]
+			r.unlimited = j.Unlimited
+		}
 		for i := range used {
 			sets = append(sets, slices.Delete(slices.Clone(used), i, i+1))
 		}
@@ -254,6 +265,7 @@ func (j *journey) again(next phase, r *run) {
 	for _, t := range b.Thresholds {
 		b.Distance = append(b.Distance, startBelow*t)
 	}
+	b.Thresholds = nil
 	j.Points = []*point{&b}
 	j.enter(next, r)
 }
@@ -320,7 +332,6 @@ func (j *journey) adopt(p Problem, r *run, at *point) {
 		optimum: optimum{lambda: at.Ensemble.Lambda},
 		gap:     at.Gap,
 		polish:  j.Phase == polishing && at != j.Best,
-		binding: at.Binding,
 	}
 	old := r.best
 	switch {
@@ -336,7 +347,7 @@ func (j *journey) adopt(p Problem, r *run, at *point) {
 // trialRounds is after how many rounds a point must be on its way to beating
 // the best: a start must have a smaller gap than the starts before it, for
 // starts that end in the same optimum are the rule, and a set of degrees must
-// come within a factor trialHope.
+// come within a factor trialHope of the best set.
 const (
 	trialRounds = 3
 	trialHope   = 1.02
@@ -351,6 +362,12 @@ func (j *journey) hopeless(at *point) bool {
 	case refining:
 		for _, earlier := range j.Points[:j.At] {
 			if earlier.Thresholds != nil && at.Gap > earlier.Gap-coarseGain {
+				return true
+			}
+		}
+	case dropping:
+		for _, earlier := range j.Points[:j.At] {
+			if earlier.Thresholds != nil && at.Gap > earlier.Gap*trialHope {
 				return true
 			}
 		}
@@ -394,10 +411,10 @@ func (j *journey) keep(r *run) {
 	r.settings.Checkpoint(state)
 }
 
-// finish measures the best by the engine.
+// finish measures the best by the engine, and what its limits cost.
 func (QuantizedDesign) finish(p Problem, r *run) (Result, error) {
 	best := r.best.ensemble()
-	out := Result{Ensemble: best, Binding: r.best.binding}
+	out := Result{Ensemble: best}
 	for _, f := range p.channels() {
 		t, err := p.measure(best, f)
 		if err != nil {
@@ -406,6 +423,13 @@ func (QuantizedDesign) finish(p Problem, r *run) (Result, error) {
 		out.Thresholds = append(out.Thresholds, t)
 	}
 	out.Threshold = out.Thresholds[0]
+	var err error
+	if out.Relaxations, err = relaxations(context.Background(), p, r); err != nil {
+		return Result{}, err
+	}
+	for _, x := range out.Relaxations {
+		out.Binding = append(out.Binding, x.Limit)
+	}
 	return out, nil
 }
 

@@ -43,7 +43,6 @@ type point struct {
 	Radius  float64
 	Rounds  int
 	Settled bool
-	Binding []string
 
 	readings []reading // nil if they are to be taken again
 }
@@ -71,6 +70,7 @@ const (
 
 // measure takes the readings of a point.
 func (f *refinement) measure(ctx context.Context, at *point) error {
+	again := at.Thresholds != nil // after a search was resumed: counted then
 	at.readings = make([]reading, len(f.by))
 	failures := make([]error, len(f.by))
 	tasks := make([]func(), len(f.by))
@@ -86,7 +86,9 @@ func (f *refinement) measure(ctx context.Context, at *point) error {
 	parallel(f.workers, tasks)
 	at.Thresholds, at.Gap = nil, 0
 	for y, r := range at.readings {
-		f.evaluations += r.evaluations
+		if !again {
+			f.evaluations += r.evaluations
+		}
 		if failures[y] != nil {
 			at.readings = nil
 			return failures[y]
@@ -128,7 +130,7 @@ func (f *refinement) round(ctx context.Context, at *point) error {
 		if err != nil || !ok {
 			continue // a smaller programme may be better conditioned
 		}
-		to := &point{Ensemble: next.ensemble, Degrees: at.Degrees, Rounds: at.Rounds + 1, Binding: next.binding}
+		to := &point{Ensemble: next.ensemble, Degrees: at.Degrees, Rounds: at.Rounds + 1}
 		for _, t := range next.thresholds {
 			to.Guess = append(to.Guess, t)
 			to.Distance = append(to.Distance, startBelow*t)

@@ -89,6 +89,8 @@ type run struct {
 	best     *candidate
 	stats    Stats
 
+	unlimited float64 // threshold found without the limit on distinct degrees
+
 	phase    string
 	since    time.Time
 	fraction float64
@@ -102,9 +104,8 @@ type candidate struct {
 	optimum         // the linear programme's answer
 
 	// Of QuantizedDesign only.
-	gap     float64 // worst over the channels, in rate
-	polish  bool    // measured on the fine grid
-	binding []string
+	gap    float64 // worst over the channels, in rate
+	polish bool    // measured on the fine grid
 }
 
 func (c *candidate) ensemble() ensembles.Ensemble {

@@ -1,9 +1,6 @@
 package optimize
 
 import (
-	"math"
-	"slices"
-
 	"tannery/ensembles"
 	"tannery/optimize/linprog"
 )
@@ -25,7 +22,6 @@ type step struct {
 	programme linprog.Program
 	lower     []float64 // lower end of each fraction
 	row       []float64
-	names     map[int]string // of the rows that are limits
 }
 
 const (
@@ -41,7 +37,6 @@ const (
 type proposal struct {
 	ensemble   ensembles.Ensemble
 	thresholds []float64 // predicted
-	binding    []string  // limits that bind
 }
 
 // solve returns the proposal; ok is false if no step is possible.
@@ -73,22 +68,13 @@ func (s *step) solve() (proposal, bool, error) {
 		at := len(s.lower) + 2*y
 		out.thresholds = append(out.thresholds, r.parameter*(1+parameterScale*(solution.X[at]-solution.X[at+1])))
 	}
-	for row, name := range s.names {
-		if math.Abs(solution.Dual[row]) > bindingDual {
-			out.binding = append(out.binding, name)
-		}
-	}
-	slices.Sort(out.binding)
 	return out, true, nil
 }
-
-// bindingDual is the multiplier above which a limit counts as binding.
-const bindingDual = 1e-7
 
 func (s *step) build() error {
 	p := &s.programme
 	p.Goal = linprog.Minimize
-	s.lower, s.names = nil, map[int]string{}
+	s.lower = nil
 	add := func(now, radius float64) error {
 		low := max(0, now-radius)
 		s.lower = append(s.lower, low)
@@ -128,13 +114,13 @@ func (s *step) build() error {
 }
 
 // add adds a row given by its coefficients for fractions and others.
-func (s *step) add(relation linprog.Relation, rhs float64) (int, error) {
+func (s *step) add(relation linprog.Relation, rhs float64) error {
 	for i, low := range s.lower {
 		rhs -= s.row[i] * low
 	}
-	row, err := s.programme.AddRow(relation, rhs, s.row...)
+	_, err := s.programme.AddRow(relation, rhs, s.row...)
 	clear(s.row)
-	return row, err
+	return err
 }
 
 func (s *step) eachVariable(f func(degree float64) float64) {
@@ -153,17 +139,16 @@ func (s *step) eachCheck(f func(degree float64) float64) {
 func (s *step) sums() error {
 	one := func(float64) float64 { return 1 }
 	s.eachVariable(one)
-	if _, err := s.add(linprog.Equal, 1); err != nil {
+	if err := s.add(linprog.Equal, 1); err != nil {
 		return err
 	}
 	s.eachCheck(one)
-	if _, err := s.add(linprog.Equal, 1); err != nil {
+	if err := s.add(linprog.Equal, 1); err != nil {
 		return err
 	}
 	s.eachVariable(func(d float64) float64 { return (1 - s.problem.Rate) / d })
 	s.eachCheck(func(d float64) float64 { return -1 / d })
-	_, err := s.add(linprog.Equal, 0)
-	return err
+	return s.add(linprog.Equal, 0)
 }
 
 // limits: those of the problem, and stability.
@@ -171,21 +156,17 @@ func (s *step) limits() error {
 	l := s.problem.Limits
 	if l.EdgesPerBit > 0 {
 		s.eachVariable(func(d float64) float64 { return 1 / d })
-		row, err := s.add(linprog.AtLeast, 1/l.EdgesPerBit)
-		if err != nil {
+		if err := s.add(linprog.AtLeast, 1/l.EdgesPerBit); err != nil {
 			return err
 		}
-		s.names[row] = limitEdges
 	}
 	hasTwo := len(s.variables) > 0 && s.variables[0] == 2
 	if l.DegreeTwoParity && hasTwo {
 		s.row[0] = 1
 		s.eachCheck(func(d float64) float64 { return -2 / d })
-		row, err := s.add(linprog.AtMost, 0)
-		if err != nil {
+		if err := s.add(linprog.AtMost, 0); err != nil {
 			return err
 		}
-		s.names[row] = limitParity
 	}
 	if !hasTwo {
 		return nil
@@ -204,12 +185,8 @@ func (s *step) limits() error {
 		s.eachCheck(func(d float64) float64 { return two * (d - 1) })
 		at := len(s.lower) + 2*y
 		s.row[at], s.row[at+1] = -change*parameterScale, change*parameterScale
-		row, err := s.add(linprog.AtMost, now+two*slope)
-		if err != nil {
+		if err := s.add(linprog.AtMost, now+two*slope); err != nil {
 			return err
-		}
-		if l.StabilityMargin > 0 {
-			s.names[row] = limitStability
 		}
 	}
 	return nil
@@ -224,7 +201,7 @@ func (s *step) gaps() error {
 		at := len(s.lower) + 2*y
 		s.row[at], s.row[at+1] = -change*parameterScale, change*parameterScale
 		s.row[len(s.row)-1] = 1
-		if _, err := s.add(linprog.AtLeast, now-s.problem.Rate); err != nil {
+		if err := s.add(linprog.AtLeast, now-s.problem.Rate); err != nil {
 			return err
 		}
 	}
@@ -250,7 +227,7 @@ func (s *step) tunnels() error {
 			}
 			change := slopes[fractions] * r.parameter * parameterScale
 			s.row[at], s.row[at+1] = change, -change
-			if _, err := s.add(linprog.AtLeast, rhs); err != nil {
+			if err := s.add(linprog.AtLeast, rhs); err != nil {
 				return err
 			}
 		}

@@ -115,8 +115,11 @@ type Result struct {
 	// Binding names the limits that keep the threshold down: by the
 	// multipliers of the last linear programme, relaxing one of them gains.
 	Binding []string
-	Status  Status
-	Stats   Stats
+	// Relaxations says of limits that bind what relaxing them a little would
+	// gain; only of QuantizedDesign.
+	Relaxations []Relaxation
+	Status      Status
+	Stats       Stats
 }
 
 // Stats tells what a search cost.
