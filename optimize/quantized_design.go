@@ -50,6 +50,11 @@ type journey struct {
 	Solved   int      // linear programmes
 	Improved int      // exchanges made
 
+	// The population of the phase evolving, how often it was renewed, and for
+	// how many generations its best has not improved.
+	Population       []individual
+	Generation, Idle int
+
 	// Unlimited is the threshold on the first channel before degrees were
 	// dropped, 0 if none were.
 	Unlimited float64
@@ -62,12 +67,14 @@ const journeyFormat = 1
 type phase int
 
 const (
-	beginning phase = iota
-	refining        // the starts, on the coarse grid
-	dropping        // variable degrees, down to the number allowed
-	exchanging
-	freeing   // ρ, of the best
-	polishing // the best, on the fine grid
+	beginning  phase = iota
+	refining         // the starts, on the coarse grid
+	dropping         // variable degrees, down to the number allowed
+	exchanging       // variable degrees
+	evolving         // a population
+	settling         // its fittest
+	freeing          // ρ, of the best
+	polishing        // the best, on the fine grid
 	arrived
 )
 
@@ -76,12 +83,14 @@ var phaseNames = map[phase]string{
 	refining:   "two check degrees",
 	dropping:   "fewer distinct degrees",
 	exchanging: "exchange of degrees",
+	evolving:   "differential evolution",
+	settling:   "refinement of the fittest",
 	freeing:    "free check degrees",
 	polishing:  "refinement on the fine grid",
 }
 
 // phaseDone is the fraction of the work that is done before each phase.
-var phaseDone = map[phase]float64{refining: 0.05, dropping: 0.4, exchanging: 0.45, freeing: 0.6, polishing: 0.75, arrived: 1}
+var phaseDone = map[phase]float64{refining: 0.05, dropping: 0.4, exchanging: 0.45, evolving: 0.55, settling: 0.63, freeing: 0.65, polishing: 0.75, arrived: 1}
 
 // channels returns the channel of the problem and the others that count.
 func (p Problem) channels() []channel.Family {
@@ -108,7 +117,7 @@ func (p Problem) yardsticks(points int) ([]yardstick, error) {
 func (q QuantizedDesign) search(ctx context.Context, p Problem, r *run) error {
 	j := &journey{Format: journeyFormat, Problem: p.digest(r.settings.Seed)}
 	if saved := r.settings.Resume; saved != nil {
-		if err := j.restore(saved); err != nil {
+		if err := j.restore(saved, p); err != nil {
 			return err
 		}
 		r.stats.Evaluations, r.stats.Programmes = j.Evolved, j.Solved
@@ -131,7 +140,7 @@ func (q QuantizedDesign) search(ctx context.Context, p Problem, r *run) error {
 }
 
 // restore reads what was written down.
-func (j *journey) restore(saved []byte) error {
+func (j *journey) restore(saved []byte, p Problem) error {
 	var old journey
 	if err := json.Unmarshal(saved, &old); err != nil {
 		return fmt.Errorf("%w: %v", ErrCheckpoint, err)
@@ -143,9 +152,50 @@ func (j *journey) restore(saved []byte) error {
 		return fmt.Errorf("%w: it belongs to another problem or seed", ErrCheckpoint)
 	case old.Phase < beginning || old.Phase > arrived || old.At < 0 || old.At > len(old.Points):
 		return fmt.Errorf("%w: phase %d, point %d of %d", ErrCheckpoint, old.Phase, old.At, len(old.Points))
+	case old.Phase > refining && old.Best == nil:
+		return fmt.Errorf("%w: no best ensemble in phase %d", ErrCheckpoint, old.Phase)
+	}
+	points := old.Points
+	if old.Best != nil {
+		points = append(slices.Clone(points), old.Best)
+	}
+	for _, at := range points {
+		if !at.whole(len(p.channels())) {
+			return fmt.Errorf("%w: it holds a point that no search wrote", ErrCheckpoint)
+		}
+	}
+	for _, v := range old.Population {
+		if len(v.Genes) != 2*p.Limits.DistinctDegrees {
+			return fmt.Errorf("%w: it holds an individual of %d genes: must be %d", ErrCheckpoint, len(v.Genes), 2*p.Limits.DistinctDegrees)
+		}
 	}
 	*j = old
 	return nil
+}
+
+// whole tells whether a point that was read can be worked on.
+func (at *point) whole(channels int) bool {
+	if at == nil || len(at.Degrees) == 0 || !(at.Radius > 0) {
+		return false
+	}
+	for _, list := range [][]float64{at.Guess, at.Distance, at.Thresholds} {
+		if list != nil && len(list) != channels {
+			return false
+		}
+	}
+	if (at.Guess == nil) != (at.Distance == nil) {
+		return false
+	}
+	lambda, err := ensembles.NewDistribution(at.Ensemble.Lambda...)
+	if err != nil {
+		return false
+	}
+	rho, err := ensembles.NewDistribution(at.Ensemble.Rho...)
+	if err != nil {
+		return false
+	}
+	_, err = ensembles.New(lambda, rho)
+	return err == nil
 }
 
 // ErrCheckpoint is wrapped by the errors that refuse a checkpoint.
@@ -182,6 +232,9 @@ func (j *journey) advance(ctx context.Context, p Problem, r *run) error {
 	if j.At < len(j.Points) {
 		return j.round(ctx, p, r)
 	}
+	if j.Phase == evolving {
+		return j.evolve(ctx, p, r)
+	}
 	best := j.bestPoint()
 	switch j.Phase {
 	case refining:
@@ -203,6 +256,12 @@ func (j *journey) advance(ctx context.Context, p Problem, r *run) error {
 			j.choose(ctx, p, r)
 			break
 		}
+		j.Points = nil
+		j.enter(evolving, r)
+	case settling:
+		if best != nil && best.Gap < j.Best.Gap {
+			j.Best = best
+		}
 		j.again(freeing, r)
 	case freeing:
 		if best != nil {
@@ -217,6 +276,48 @@ func (j *journey) advance(ctx context.Context, p Problem, r *run) error {
 	}
 	return nil
 }
+
+// evolve renews the population, or ends its evolution: the fittest is refined
+// if that may beat the best.
+func (j *journey) evolve(ctx context.Context, p Problem, r *run) error {
+	if j.Generation == generationCap || j.Idle == idleGenerations {
+		fittest := fittest(j.Population)
+		j.Population = nil
+		e, ok := fittest.ensemble(p)
+		if !ok || fittest.Gap > j.Best.Gap*fitHope {
+			j.again(freeing, r)
+			return nil
+		}
+		j.Points = []*point{{Ensemble: e, Degrees: degreesOf(e.Lambda), Radius: startRadius}}
+		j.enter(settling, r)
+		return nil
+	}
+	f, err := j.refinement(p, r)
+	if err != nil {
+		return err
+	}
+	next, err := f.generation(ctx, j.Population, j.Generation, r.settings.Seed, j.Best.Ensemble)
+	if ctx.Err() != nil {
+		return nil
+	}
+	if err != nil {
+		return err
+	}
+	j.Idle++
+	if j.Population == nil || fittest(next).Gap < fittest(j.Population).Gap-coarseGain {
+		j.Idle = 0
+	}
+	j.Population = next
+	j.Generation++
+	j.count(f, r)
+	j.report(r)
+	j.keep(r)
+	return nil
+}
+
+// fitHope is how much larger than the best gap that of the fittest may be for
+// its refinement to be tried: a population comes near an optimum slowly.
+const fitHope = 1.5
 
 // exchangeCap bounds the exchanges of degrees.
 const exchangeCap = 12
@@ -276,33 +377,43 @@ func (j *journey) enter(next phase, r *run) {
 	j.keep(r)
 }
 
-// round refines the point in work by one round, and passes on to the next when
-// it has settled or cannot be measured.
-func (j *journey) round(ctx context.Context, p Problem, r *run) error {
+// refinement returns that of the present phase.
+func (j *journey) refinement(p Problem, r *run) (*refinement, error) {
 	points, tolerance, gain := coarsePoints, coarseTolerance, coarseGain
 	if j.Phase == polishing {
 		points, tolerance, gain = finePoints, fineTolerance, fineGain
 	}
 	by, err := p.yardsticks(points)
-	if err != nil {
-		return err
-	}
-	f := refinement{
+	return &refinement{
 		problem:   p,
 		by:        by,
 		workers:   r.settings.Workers,
 		gain:      gain,
 		tolerance: tolerance,
 		free:      j.Phase >= freeing,
+	}, err
+}
+
+// count adds what was done to the sums.
+func (j *journey) count(f *refinement, r *run) {
+	j.Evolved += f.evaluations
+	j.Solved += f.programmes
+	r.stats.Evaluations, r.stats.Programmes = j.Evolved, j.Solved
+}
+
+// round refines the point in work by one round, and passes on to the next when
+// it has settled or cannot be measured.
+func (j *journey) round(ctx context.Context, p Problem, r *run) error {
+	f, err := j.refinement(p, r)
+	if err != nil {
+		return err
 	}
 	at := *j.Points[j.At]
 	err = f.round(ctx, &at)
 	if ctx.Err() != nil {
 		return nil
 	}
-	j.Evolved += f.evaluations
-	j.Solved += f.programmes
-	r.stats.Evaluations, r.stats.Programmes = j.Evolved, j.Solved
+	j.count(f, r)
 	switch {
 	case errors.Is(err, errNoTunnel):
 		at.Settled = true
@@ -396,7 +507,11 @@ func (j *journey) report(r *run) {
 			break
 		}
 	}
-	r.report(from + (to-from)*float64(j.At)/math.Max(1, float64(len(j.Points))))
+	done := float64(j.At) / math.Max(1, float64(len(j.Points)))
+	if j.Phase == evolving {
+		done = float64(j.Generation) / generationCap
+	}
+	r.report(from + (to-from)*done)
 }
 
 // keep hands out the state to be written down.

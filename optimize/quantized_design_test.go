@@ -1,6 +1,7 @@
 package optimize
 
 import (
+	"bytes"
 	"context"
 	"errors"
 	"math"
@@ -215,6 +216,7 @@ func TestForeignStatesRefused(t *testing.T) {
 		"another seed":    {p, state, 1},
 		"truncated":       {p, state[:len(state)/2], 0},
 		"not a state":     {p, []byte("kind: profile\n"), 0},
+		"a point missing": {p, bytes.Replace(state, []byte(`"Radius"`), []byte(`"Radios"`), -1), 0},
 	} {
 		_, err := Search(context.Background(), c.p, Settings{Method: QuantizedDesign{}, Resume: c.s, Seed: c.seed})
 		if !errors.Is(err, ErrCheckpoint) {
