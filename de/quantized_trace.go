@@ -11,15 +11,17 @@ import (
 )
 
 const (
-	// tracePoints is the number of points of the grid that traces use: their
-	// error is below 1e-6 of the values.
-	tracePoints = 512
-	// leastTraced is the bit error probability at which a trace that is
-	// known to converge ends: smaller ones are lost in rounding.
-	leastTraced = 1e-15
+	// tracePoints is the number of points of the grid that traces use. Near
+	// a threshold their values are off by about 1e-6 of themselves; error
+	// probabilities of ensembles with variable nodes of degree 2 by 1e-5 at
+	// 1e-6 and by some hundredths at 1e-12.
+	tracePoints = 1024
 	// leastClear is the Bhattacharyya parameter below which rounding is seen
 	// in the progress of an iteration.
 	leastClear = 1e-6
+	// leastFollowed is the Bhattacharyya parameter at which a trace that is
+	// known to converge ends in any case: rounding is as large.
+	leastFollowed = 1e-16
 )
 
 // Trace evolves the ensemble step by step.
@@ -27,14 +29,15 @@ func (q QuantizedEngine) Trace(ctx context.Context, e ensembles.Ensemble, f chan
 	if err := checkParameter(f, parameter); err != nil {
 		return Trace{}, err
 	}
-	grid, err := density.NewGrid(cmp.Or(q.tracePoints, tracePoints))
+	grid, err := density.NewLongGrid(cmp.Or(q.tracePoints, tracePoints))
 	if err != nil {
 		return Trace{}, err
 	}
 	t := Trace{Method: Quantized, Parameter: parameter, Outcome: Exhausted}
 	certain := certainBelow(e, f.Bhattacharyya(parameter))
 	v := NewEvolution(e, grid, f.Density(parameter))
-	bit := v.Messages.ErrorProbability()
+	bit := f.ErrorProbability(parameter)
+	messages := bit
 	var c course
 	for i := 0; ; i++ {
 		if err := ctx.Err(); err != nil {
@@ -43,7 +46,7 @@ func (q QuantizedEngine) Trace(ctx context.Context, e ensembles.Ensemble, f chan
 		// Rounding may take what is almost zero below it.
 		p := Point{
 			Iteration:           i,
-			ErrorProbability:    max(v.Messages.ErrorProbability(), 0),
+			ErrorProbability:    max(messages, 0),
 			Entropy:             max(v.Messages.Entropy(), 0),
 			Bhattacharyya:       max(v.Messages.Bhattacharyya(), 0),
 			BitErrorProbability: max(bit, 0),
@@ -51,23 +54,23 @@ func (q QuantizedEngine) Trace(ctx context.Context, e ensembles.Ensemble, f chan
 		v.Step()
 		p.CheckEntropy = max(v.Checks.Entropy(), 0)
 		t.Points = append(t.Points, p)
-		if p.BitErrorProbability <= leastTraced && p.Bhattacharyya < certain {
-			t.Outcome = Converged
-			break
-		}
 		next := v.Messages.Bhattacharyya()
-		c.note(p.Bhattacharyya, next)
-		if c.stalled() || !(next < p.Bhattacharyya) {
-			t.Outcome = Stalled
-			if p.Bhattacharyya < certain { // only rounding is in the way
+		if p.Bhattacharyya < certain {
+			if p.BitErrorProbability <= negligibleError || p.Bhattacharyya <= leastFollowed {
 				t.Outcome = Converged
+				break
 			}
-			break
+		} else {
+			c.note(p.Bhattacharyya, next)
+			if c.stalled() || !(next < p.Bhattacharyya) {
+				t.Outcome = Stalled
+				break
+			}
 		}
 		if i == iterations {
 			break
 		}
-		bit = v.DecisionError()
+		messages, bit = v.Messages.ErrorProbability(), v.DecisionError()
 	}
 	clear := slices.IndexFunc(t.Points, func(p Point) bool { return p.Bhattacharyya < leastClear })
 	if clear < 0 {
