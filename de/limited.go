@@ -53,22 +53,22 @@ const (
 func Limited(ctx context.Context, engine Engine, e ensembles.Ensemble, f channel.Family, iterations int, target float64) (Threshold, error) {
 	q, quantized := engine.(QuantizedEngine)
 	if !quantized {
-		return limitedBy(ctx, engine, e, f, iterations, target)
+		return limitedBy(ctx, engine, e, f, iterations, target, math.NaN())
 	}
 	q.tracePoints = limitedPoints / 2
-	coarse, err := limitedBy(ctx, q, e, f, iterations, target)
+	coarse, err := limitedBy(ctx, q, e, f, iterations, target, math.NaN())
 	if err != nil {
 		return coarse, err
 	}
 	q.tracePoints = limitedPoints
-	fine, err := limitedBy(ctx, q, e, f, iterations, target)
-	fine.Uncertainty += limitedGain*math.Abs(fine.Value-coarse.Value) + gridError(limitedPoints)*fine.Value
+	fine, err := limitedBy(ctx, q, e, f, iterations, target, coarse.Value)
+	fine.Uncertainty += limitedGain*math.Abs(fine.Value-coarse.Value) + gridError(limitedPoints/2)*fine.Value
 	fine.Iterations += coarse.Iterations
 	return fine, err
 }
 
-// limitedBy is Limited by the traces of one engine.
-func limitedBy(ctx context.Context, engine Engine, e ensembles.Ensemble, f channel.Family, iterations int, target float64) (Threshold, error) {
+// limitedBy is Limited by the traces of one engine, with a guess, or NaN.
+func limitedBy(ctx context.Context, engine Engine, e ensembles.Ensemble, f channel.Family, iterations int, target, guess float64) (Threshold, error) {
 	if iterations < 1 {
 		return Threshold{}, fmt.Errorf("iterations %d: must be at least 1", iterations)
 	}
@@ -87,7 +87,10 @@ func limitedBy(ctx context.Context, engine Engine, e ensembles.Ensemble, f chann
 		return math.Log(math.Max(last.BitErrorProbability, leastError) / target), nil
 	}
 
-	low, high, fLow, fHigh, err := bracket(e, f, excess)
+	low, high, fLow, fHigh, found, err := bracketNear(guess, f, excess)
+	if !found && err == nil {
+		low, high, fLow, fHigh, err = bracket(e, f, excess)
+	}
 	if err != nil {
 		return Threshold{}, err
 	}
@@ -137,6 +140,25 @@ func limitedBy(ctx context.Context, engine Engine, e ensembles.Ensemble, f chann
 	out.Uncertainty = high - reached
 	return out, nil
 }
+
+// bracketNear returns two parameters near the guess between which the excess
+// changes sign, if they are found.
+func bracketNear(guess float64, f channel.Family, excess func(float64) (float64, error)) (low, high, fLow, fHigh float64, found bool, err error) {
+	best, worst := f.Range()
+	low, high = guess*(1-nearGuess), guess*(1+nearGuess)
+	if !(low > best && high < worst) {
+		return 0, 0, 0, 0, false, nil
+	}
+	if fLow, err = excess(low); err != nil || fLow > 0 {
+		return 0, 0, 0, 0, false, err
+	}
+	fHigh, err = excess(high)
+	return low, high, fLow, fHigh, fHigh > 0, err
+}
+
+// nearGuess is how near to the value on one grid that on another is expected,
+// relative to it.
+const nearGuess = 1e-5
 
 // bracket returns two parameters between which the excess changes sign, as
 // close as the Shannon limit tells, or the ends of the family.

@@ -137,7 +137,7 @@ func TestLimitedUncertainty(t *testing.T) {
 		if err != nil {
 			t.Fatal(err)
 		}
-		finer, err := limitedBy(ctx, QuantizedEngine{tracePoints: 4096}, c.e, c.f, c.iterations, c.target)
+		finer, err := limitedBy(ctx, QuantizedEngine{tracePoints: 4096}, c.e, c.f, c.iterations, c.target, got.Value)
 		if err != nil {
 			t.Fatal(err)
 		}
