@@ -28,6 +28,7 @@ type approach struct {
 	tunnel     float64   // where the first tunnel closes, as last predicted
 	estimate   float64   // of the threshold: there, or at the bound
 	error      float64   // of tunnel: extrapolation and stopping rule
+	foundError float64   // what of error is from the grid that find was done on
 	critical   []closing // places where the tunnel closes, the first one first
 }
 
@@ -56,34 +57,54 @@ const (
 	// of two grids in it is smaller than itself.
 	fairEstimate = 8
 	transferGain = 8
+	// leastCapacity is the capacity below which nothing is tried where neither
+	// the design rate nor stability bounds the threshold.
+	leastCapacity = 1e-4
 	// runCap ends an approach that does not settle.
 	runCap = 60
 )
 
 // bracket sets low, where success is certain, high, which cannot be reached,
-// and the stability bound.
-func (a *approach) bracket(ctx context.Context) error {
+// and the stability bound. Where that settles the threshold it is low, and
+// why says so.
+func (a *approach) bracket(ctx context.Context) (why string, err error) {
 	best, worst := a.f.Range()
 	a.bound = StabilityOf(a.e, a.f, best).Bound
 	a.low, a.high = best, min(a.bound, worst)
 	if rate := a.e.DesignRate(); rate > 0 && rate < 1 {
 		limit, err := a.f.Inverse(rate)
 		if err != nil {
-			a.high = best // the whole family has less capacity
-			return nil
+			a.high = best
+			return fmt.Sprintf("the design rate, %.6g, is above the capacity of the best channel, %.6g", rate, a.f.Capacity(best)), nil
 		}
 		a.high = min(a.high, limit)
-	}
-	if math.IsInf(a.high, 1) {
-		return fmt.Errorf("the threshold has no upper bound: the design rate is %g and there are no variable nodes of degree 2", a.e.DesignRate())
+	} else if math.IsInf(a.high, 1) {
+		if a.high, err = a.f.Inverse(leastCapacity); err != nil {
+			return "", err
+		}
 	}
 	// On the BEC the Bhattacharyya parameter is the erasure probability, and
 	// no channel of the same parameter is worse: below is certain success.
 	onBEC, err := ExactEngine{}.Threshold(ctx, a.e, channel.BEC{})
 	if err != nil {
-		return err
+		return "", err
 	}
-	a.low = min(channel.ParameterAtBhattacharyya(a.f, onBEC.Value), a.high)
+	certain := channel.ParameterAtBhattacharyya(a.f, onBEC.Value)
+	if a.f.Bhattacharyya(certain) > onBEC.Value {
+		// Not even the best channel of the family is that good.
+		c, err := evolve(ctx, a.e, a.grid, a.f, best, a.decoded())
+		if err != nil {
+			return "", err
+		}
+		if c.outcome != Converged {
+			a.high = best
+			return "decoding does not succeed on the best channel", nil
+		}
+	}
+	if certain >= a.high && math.IsInf(min(a.bound, worst), 1) {
+		return "", fmt.Errorf("there is no threshold: decoding succeeds down to a capacity of %g", leastCapacity)
+	}
+	a.low = min(certain, a.high)
 	// Thresholds on different channels are at nearly the same capacity.
 	a.estimate = a.low + (a.high-a.low)/2
 	if onBEC.Value < 1 {
@@ -91,7 +112,7 @@ func (a *approach) bracket(ctx context.Context) error {
 			a.estimate = min(guess, a.high)
 		}
 	}
-	return nil
+	return "", nil
 }
 
 // start returns how far below the guess to begin.
@@ -105,7 +126,7 @@ func (a *approach) start() float64 {
 // grids differ little. It reports false if the finer grid differs so much that
 // one of the runs fails.
 func (a *approach) transfer(ctx context.Context, coarse *approach, tolerance float64) (bool, error) {
-	a.runs, a.iterations = nil, 0
+	a.runs = nil
 	fair := *coarse
 	for n := 3; ; n++ {
 		fair.runs = coarse.runs[:n]
@@ -123,7 +144,8 @@ func (a *approach) transfer(ctx context.Context, coarse *approach, tolerance flo
 	missing := coarse.estimate - fair.estimate
 	a.tunnel += missing
 	a.estimate = min(a.tunnel, a.bound)
-	a.error = coarse.error + math.Abs(missing)/transferGain
+	a.foundError = coarse.foundError
+	a.error = a.foundError + math.Abs(missing)/transferGain
 	return true, nil
 }
 
@@ -158,12 +180,12 @@ func (a *approach) run(ctx context.Context, parameter float64) (bool, error) {
 // find approaches the threshold until successive predictions agree within
 // tolerance (of the parameter), beginning at the given distance below guess.
 func (a *approach) find(ctx context.Context, guess, distance, tolerance float64) error {
-	a.runs, a.iterations, a.tunnel = nil, 0, math.NaN()
+	a.runs, a.tunnel = nil, math.NaN()
 	next := guess - distance
 	for range runCap {
 		if a.high-a.low <= tolerance {
 			a.tunnel, a.error = a.low+(a.high-a.low)/2, (a.high-a.low)/2
-			a.estimate = a.tunnel
+			a.estimate, a.foundError = a.tunnel, a.error
 			return nil
 		}
 		ok, err := a.run(ctx, next)
@@ -202,11 +224,10 @@ func (a *approach) find(ctx context.Context, guess, distance, tolerance float64)
 			ahead = a.estimate - last
 		}
 		if ok {
-			ahead *= 1 - remaining
+			next = a.below(last + ahead*(1-remaining))
 		} else {
-			ahead /= 2
+			next = last + min(ahead, a.high-last)/2
 		}
-		next = a.below(last + ahead)
 	}
 	return fmt.Errorf("no threshold found in %d runs: it lies between %v and %v", runCap, a.low, a.high)
 }
@@ -219,6 +240,7 @@ func (a *approach) settled(previous, tolerance float64) bool {
 	if a.tunnel == previous {
 		a.error = 0 // where both are infinite
 	}
+	a.foundError = a.error
 	switch {
 	case a.estimate > a.high:
 		// A run has failed below it.

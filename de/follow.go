@@ -55,7 +55,7 @@ func (c Course) Rate(depth float64) float64 {
 // run above it that QuantizedEngine makes.
 func Approach(ctx context.Context, e ensembles.Ensemble, g *density.Grid, f channel.Family, guess, distance, tolerance float64) (threshold float64, courses []Course, err error) {
 	a := approach{e: e, f: f, grid: g, unchecked: true}
-	if err := a.bracket(ctx); err != nil {
+	if _, err := a.bracket(ctx); err != nil {
 		return 0, nil, err
 	}
 	if a.high <= a.low {

@@ -49,11 +49,18 @@ func (q QuantizedEngine) Threshold(ctx context.Context, e ensembles.Ensemble, f 
 	if tolerance == 0 {
 		tolerance = DefaultTolerance
 	}
-	a := approach{e: e, f: f}
-	if err := a.bracket(ctx); err != nil {
+	grid, err := density.NewGrid(coarsestPoints)
+	if err != nil {
 		return t, err
 	}
-	if a.high <= a.low {
+	a := approach{e: e, f: f, grid: grid}
+	switch why, err := a.bracket(ctx); {
+	case err != nil:
+		return t, err
+	case why != "":
+		t.Value, t.Warnings = best, []string{why}
+		return t, nil
+	case a.high <= a.low:
 		// Certain success and certain failure meet: cycle codes, say, whose
 		// stability bound is that of the Bhattacharyya recursion.
 		t.Value, t.Critical = a.high, []Critical{{}}
@@ -68,25 +75,19 @@ func (q QuantizedEngine) Threshold(ctx context.Context, e ensembles.Ensemble, f 
 	absolute := tolerance * a.estimate / 4
 	bracketed := a
 	for points := coarsestPoints; ; points *= 2 {
-		grid, err := density.NewGrid(points)
-		if err != nil {
-			return t, err
-		}
 		coarse := a
 		a = bracketed
-		a.grid = grid
-		transferred := false
-		if points > coarsestPoints && len(coarse.runs) >= 3 {
-			transferred, err = a.transfer(ctx, &coarse, absolute)
-			t.Iterations += a.iterations
+		if a.grid, err = density.NewGrid(points); err != nil {
+			return t, err
 		}
-		if err == nil && !transferred {
-			guess, distance := bracketed.estimate, bracketed.start()
-			a = bracketed
-			a.grid = grid
-			err = a.find(ctx, guess, distance, absolute)
-			t.Iterations += a.iterations
+		found := false
+		if len(coarse.runs) >= 3 {
+			found, err = a.transfer(ctx, &coarse, absolute)
 		}
+		if !found && err == nil {
+			err = a.find(ctx, a.estimate, a.start(), absolute)
+		}
+		t.Iterations += a.iterations
 		if err != nil {
 			return t, err
 		}
