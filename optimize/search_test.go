@@ -17,9 +17,18 @@ import (
 // certified is how far the certificate's bound may be above the threshold.
 const certified = 1e-9
 
+// designed sets the linear design that fits the channel, unless a method is
+// set.
+func designed(p Problem, s Settings) Settings {
+	if s.Method == nil && p.Channel != nil && p.Channel.Name() == "biawgn" {
+		s.Method = GaussianDesign{}
+	}
+	return s
+}
+
 func mustSearch(t testing.TB, p Problem, s Settings) Result {
 	t.Helper()
-	result, err := Search(context.Background(), p, s)
+	result, err := Search(context.Background(), p, designed(p, s))
 	if err != nil {
 		t.Fatalf("rate %v, variable degrees %v, check degrees %v, %+v: %v", p.Rate, p.VariableDegrees, p.CheckDegrees, p.Limits, err)
 	}
@@ -159,7 +168,7 @@ func TestRandomBriefs(t *testing.T) {
 		if r.IntN(5) == 0 {
 			p.Limits.DistinctDegrees = 2 + r.IntN(3)
 		}
-		result, err := Search(context.Background(), p, Settings{})
+		result, err := Search(context.Background(), p, designed(p, Settings{}))
 		if errors.Is(err, ErrUnreachable) {
 			continue
 		}
@@ -271,7 +280,7 @@ func TestInterruptedReturnsBest(t *testing.T) {
 		p := Problem{Channel: f, Rate: 0.5, VariableDegrees: DegreesUpTo(20)}
 		ctx, cancel := context.WithCancel(context.Background())
 		seen := &recorder{after: 12, interrupt: cancel}
-		r, err := Search(ctx, p, Settings{Recorder: seen, Workers: 2})
+		r, err := Search(ctx, p, designed(p, Settings{Recorder: seen, Workers: 2}))
 		if err != nil {
 			t.Fatal(err)
 		}
@@ -283,7 +292,7 @@ func TestInterruptedReturnsBest(t *testing.T) {
 		if last := seen.improved[len(seen.improved)-1]; math.Abs(last.Threshold-r.Threshold.Value) > 1e-8 {
 			t.Errorf("%v returned, %v was the best", r.Threshold.Value, last.Threshold)
 		}
-		if _, err := Search(ctx, p, Settings{}); !errors.Is(err, context.Canceled) {
+		if _, err := Search(ctx, p, designed(p, Settings{})); !errors.Is(err, context.Canceled) {
 			t.Errorf("cancelled before the start: %v", err)
 		}
 	}
