@@ -333,7 +333,7 @@ func TestBadProblems(t *testing.T) {
 		"margin 1":             {func(p *Problem) { p.Limits.StabilityMargin = 1 }, nil},
 		"negative distinct":    {func(p *Problem) { p.Limits.DistinctDegrees = -1 }, nil},
 		"iterations":           {func(p *Problem) { p.Limits.Iterations = 50 }, ErrUnsupported},
-		"another channel":      {func(p *Problem) { p.Channel = channel.BSC{} }, ErrUnsupported},
+		"several channels":     {func(p *Problem) { p.Also = []channel.Family{channel.BSC{}} }, ErrUnsupported},
 		"too few edges":        {func(p *Problem) { p.Limits.EdgesPerBit = 1.5 }, ErrUnreachable},
 		"rate too high":        {func(p *Problem) { p.Rate, p.CheckDegrees = 0.9, []int{6} }, ErrUnreachable},
 		"rate too low":         {func(p *Problem) { p.Rate, p.CheckDegrees = 0.1, []int{40} }, ErrUnreachable},

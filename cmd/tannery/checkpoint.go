@@ -66,13 +66,19 @@ type checkpoint struct {
 // there is none yet. One that is damaged, or of another search, is refused
 // and left as it is.
 func openCheckpoint(path string, b brief.Brief, m optimize.Method) (c *checkpoint, state []byte, err error) {
+	head, err := checkpointHead(b, m)
+	if err != nil {
+		return nil, nil, err
+	}
+	return openState(path, head)
+}
+
+// openState is openCheckpoint for whatever the head identifies.
+func openState(path string, head checkpointFile) (c *checkpoint, state []byte, err error) {
 	if path == "" || path == "-" {
 		return nil, nil, usagef("--checkpoint %q: must be a file name", path)
 	}
-	c = &checkpoint{path: path, wake: make(chan struct{}, 1), stop: make(chan struct{}), done: make(chan struct{})}
-	if c.head, err = checkpointHead(b, m); err != nil {
-		return nil, nil, err
-	}
+	c = &checkpoint{path: path, head: head, wake: make(chan struct{}, 1), stop: make(chan struct{}), done: make(chan struct{})}
 	lock, ok, err := lockFile(path + ".lock")
 	switch {
 	case err != nil:

@@ -69,9 +69,19 @@ func (d *Draft) Finish() (Brief, error) {
 	if d.Err() == nil {
 		d.checkCapacities()
 		d.checkDegrees()
+		if err := d.Err(); err != nil {
+			return d.Brief, Unreachable{err}
+		}
 	}
 	return d.Brief, d.Err()
 }
+
+// Unreachable is the error of a brief that is well formed but asks for what no
+// ensemble has: a rate that its degrees or channels do not allow.
+type Unreachable struct{ error }
+
+// Unwrap returns the error that it is.
+func (u Unreachable) Unwrap() error { return u.error }
 
 // Err returns the problems found so far.
 func (d *Draft) Err() error {

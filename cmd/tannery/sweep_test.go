@@ -1,0 +1,160 @@
+package main
+
+import (
+	"encoding/csv"
+	"encoding/json"
+	"math/rand/v2"
+	"os"
+	"path/filepath"
+	"strings"
+	"testing"
+	"time"
+
+	"tannery/cmd/tannery/internal/report"
+	"tannery/optimize"
+)
+
+// series runs a command that does several searches and returns its rows
+// without running times.
+func series(t *testing.T, args string) []report.SeriesRow {
+	t.Helper()
+	var answer report.Series
+	if err := json.Unmarshal([]byte(succeed(t, "", strings.Fields(args+" --json")...)), &answer); err != nil {
+		t.Fatal(err)
+	}
+	for i := range answer.Rows {
+		answer.Rows[i].Seconds = 0
+	}
+	return answer.Rows
+}
+
+// Each cell of a sweep is the search that it stands for.
+func TestSweepIsSearches(t *testing.T) {
+	rows := series(t, "sweep --channels bec --rates 0.4,0.6 --max-variable-degrees 5,9")
+	if len(rows) != 4 {
+		t.Fatalf("%d rows: want 4", len(rows))
+	}
+	var one struct {
+		Threshold struct{ Threshold float64 }
+	}
+	text := succeed(t, "", strings.Fields("search --channel bec --rate 0.6 --max-variable-degree 5 --json")...)
+	if err := json.Unmarshal([]byte(text), &one); err != nil {
+		t.Fatal(err)
+	}
+	if got, want := rows[2].Threshold, one.Threshold.Threshold; got != want {
+		t.Errorf("%s: threshold %v: the search has %v", rows[2].Name, got, want)
+	}
+	for i := 0; i < len(rows); i += 2 {
+		if rows[i+1].Threshold < rows[i].Threshold {
+			t.Errorf("%s is worse than %s, which its degrees include", rows[i+1].Name, rows[i].Name)
+		}
+	}
+}
+
+func TestSweepCSVAndUnreachable(t *testing.T) {
+	text := succeed(t, "", strings.Fields("sweep --channels bec --rates 0.5,0.9 --max-variable-degrees 4 --check-degrees 7,8 --csv")...)
+	lines, err := csv.NewReader(strings.NewReader(text)).ReadAll()
+	if err != nil {
+		t.Fatal(err)
+	}
+	if len(lines) != 3 {
+		t.Fatalf("%d lines: want 3", len(lines))
+	}
+	status, threshold := 7, 8
+	if lines[1][status] != optimize.Settled.String() || lines[1][threshold] == "" {
+		t.Errorf("rate 0.5: %v", lines[1])
+	}
+	if lines[2][status] != "unreachable" || lines[2][threshold] != "" {
+		t.Errorf("rate 0.9 with check degrees 7 and 8: %v", lines[2])
+	}
+}
+
+const killedSweep = "sweep --channels bec --rates 0.3,0.4,0.5,0.6 --max-variable-degrees 7,12 --no-progress"
+
+// A sweep that is killed again and again ends in the same table, and in the
+// same profiles, as one that is not.
+func TestKilledSweepEndsInTheSameTable(t *testing.T) {
+	want := series(t, killedSweep)
+	folder := t.TempDir()
+	state, profiles := filepath.Join(folder, "state"), filepath.Join(folder, "profiles")
+	args := killedSweep + " --checkpoint " + state + " --profiles " + profiles
+	random := rand.New(rand.NewPCG(7, 7))
+	for range 4 {
+		cmd, _ := process(t, strings.Fields(args)...)
+		if err := cmd.Start(); err != nil {
+			t.Fatal(err)
+		}
+		time.Sleep(time.Duration(50+random.IntN(700)) * time.Millisecond)
+		cmd.Process.Kill()
+		cmd.Wait()
+	}
+	got := series(t, args)
+	for i := range want {
+		if got[i] != want[i] && (got[i].Lambda != want[i].Lambda || got[i].Rho != want[i].Rho || got[i].Threshold != want[i].Threshold) {
+			t.Errorf("row %d:\n%+v\nuninterrupted\n%+v", i, got[i], want[i])
+		}
+		if _, err := os.Stat(filepath.Join(profiles, want[i].Name+".yaml")); err != nil {
+			t.Error(err)
+		}
+	}
+	if _, err := os.Stat(state); err == nil {
+		t.Error("the checkpoint of a finished sweep was not removed")
+	}
+}
+
+// A checkpoint of another series is refused and kept.
+func TestForeignSweepCheckpoint(t *testing.T) {
+	state := filepath.Join(t.TempDir(), "state")
+	const text = "not a checkpoint\n"
+	if err := os.WriteFile(state, []byte(text), 0o666); err != nil {
+		t.Fatal(err)
+	}
+	code, _, stderr := command(t, "", strings.Fields(killedSweep+" --checkpoint "+state)...)
+	if code != exitUsage || !strings.Contains(stderr, "found no checkpoint, or a damaged one") {
+		t.Errorf("exit code %d: %s", code, stderr)
+	}
+	if left, err := os.ReadFile(state); err != nil || string(left) != text {
+		t.Errorf("the file was changed: %q, %v", left, err)
+	}
+}
+
+func TestBadSeries(t *testing.T) {
+	for args, want := range map[string]string{
+		"sweep --channels bec --rates x":                    `--rates: found "x"; allowed: a list of what search takes as --rate`,
+		"sweep --channels bec --rates 0.5,0.5":              "bec-r0.5-d15: found twice; allowed: each channel, rate and degree once",
+		"sweep --channels bec --rates 0.5 --rate 0.4":       "--rate: found in tannery sweep; allowed: what tannery sweep --help lists",
+		"sweep --channels bec --rates 0.5 --csv --json":     "--csv and --json: only one of the two",
+		"sweep --channels bec --rates 0.5,0.6 --plot x.svg": "--plot: a picture shows one channel and one rate",
+		"sweep -":                           "-: found standard input; allowed: a file, because the brief is read for each search",
+		"tradeoff --channel bec --rate 0.5": "--at: missing; allowed: a list of limits, such as 2.8,3,3.2 edges per bit or 10,20,40 iterations",
+		"tradeoff --channel bec --rate 0.5 --at 3,-1":                        `--at: found "-1"; allowed: what search takes as --max-edges-per-bit`,
+		"tradeoff --channel bec --rate 0.5 --at 3,3.0":                       "--at: found 3 twice; allowed: each limit once",
+		"tradeoff --channel bec --rate 0.5 --at 3 --max-edges-per-bit 3":     "--max-edges-per-bit: found in tannery tradeoff; allowed: what tannery tradeoff --help lists",
+		"tradeoff --channel bec --rate 0.5 --at 1.5 --against iterations":    `--at: found "1.5"; allowed: what search takes as --max-iterations`,
+		"tradeoff --channel bec --rate 0.5 --at 3 --against time":            "--against",
+		"sweep --channels bec --rates 0.5 --max-variable-degrees 5,,8 --csv": "--max-variable-degrees",
+	} {
+		code, stdout, stderr := command(t, "", strings.Fields(args)...)
+		if code != exitUsage || stdout != "" || !strings.Contains(stderr, want) {
+			t.Errorf("tannery %s: exit code %d\n%s\nwant %s", args, code, stderr, want)
+		}
+	}
+}
+
+// A looser limit never has a worse threshold.
+func TestTradeoffIsMonotone(t *testing.T) {
+	for _, args := range []string{
+		"tradeoff --channel bec --rate 0.5 --max-variable-degree 12 --at 3.4,2.8,3",
+		"tradeoff --channel biawgn --rate 0.5 --variable-degrees 2,3,5 --against iterations --at 10,30 --target-error 1e-4",
+	} {
+		rows := series(t, args)
+		for i, r := range rows {
+			if r.MaxEdgesPerBit > 0 && r.EdgesPerBit > r.MaxEdgesPerBit*(1+1e-9) {
+				t.Errorf("%s has %v edges per bit", r.Name, r.EdgesPerBit)
+			}
+			if i > 0 && r.Threshold < rows[i-1].Threshold {
+				t.Errorf("%s: threshold %v is below that of %s, %v", r.Name, r.Threshold, rows[i-1].Name, rows[i-1].Threshold)
+			}
+		}
+	}
+}
