@@ -18,7 +18,7 @@ const (
 	// fractions of edges by less than a threshold shows, so that
 	// maxScoredLong scores are enough.
 	longLength    = 10_000
-	maxScoredLong = 40
+	maxScoredLong = 120
 )
 
 // Realize chooses whole numbers of nodes for a code of the given length.
@@ -126,6 +126,9 @@ func candidatesOf(variable, check nodes, length, checks int) []candidate {
 	candidates := combine(variable, check, roundings, func(sockets int) []Counts {
 		matches := rounded[sockets]
 		if count := check.match(checks, sockets); count != nil {
+			matches = append(slices.Clip(matches), check.counts(count))
+		}
+		for _, count := range check.pairs(checks, sockets) {
 			matches = append(slices.Clip(matches), check.counts(count))
 		}
 		return matches
