@@ -1,6 +1,10 @@
 package density
 
-import "tannery/ensembles"
+import (
+	"math"
+
+	"tannery/ensembles"
+)
 
 // polynomial evaluates Σ fᵢ z^(i-1), the generating function of a degree
 // distribution. Each term multiplies its predecessor's power by z to the gap
@@ -39,6 +43,41 @@ func (p polynomial) at(z float64) float64 {
 	}
 	return sum
 }
+
+// atFour evaluates at four real points, together to keep the processor's
+// arithmetic units busy. It leaves out terms that are lost in rounding at all
+// of them, as those of large degree mostly are.
+func (p polynomial) atFour(z0, z1, z2, z3 float64) (sum0, sum1, sum2, sum3 float64) {
+	power0, power1, power2, power3 := 1.0, 1.0, 1.0, 1.0
+	for _, t := range p {
+		square0, square1, square2, square3 := z0, z1, z2, z3
+		for gap := t.gap; gap != 0; gap >>= 1 {
+			if gap&1 != 0 {
+				power0 *= square0
+				power1 *= square1
+				power2 *= square2
+				power3 *= square3
+			}
+			square0 *= square0
+			square1 *= square1
+			square2 *= square2
+			square3 *= square3
+		}
+		sum0 += t.weight * power0
+		sum1 += t.weight * power1
+		sum2 += t.weight * power2
+		sum3 += t.weight * power3
+		if math.Abs(power0) < lostInRounding*math.Abs(sum0) && math.Abs(power1) < lostInRounding*math.Abs(sum1) &&
+			math.Abs(power2) < lostInRounding*math.Abs(sum2) && math.Abs(power3) < lostInRounding*math.Abs(sum3) {
+			break
+		}
+	}
+	return sum0, sum1, sum2, sum3
+}
+
+// lostInRounding is the fraction of a sum below which the terms still missing,
+// whose weights add up to 1 at most, do not change it.
+const lostInRounding = 1e-17
 
 // atPair evaluates at two complex points, together to keep the processor's
 // arithmetic units busy.

@@ -52,9 +52,13 @@ func (g *Grid) NewVariableNode(lambda ensembles.Distribution, channel *Density) 
 func (v *VariableNode) Apply(dst, src *Density) {
 	v.cosine.transform(v.incoming, src.even)
 	spectrum := dst.even
-	for k, z := range v.incoming {
-		spectrum[k] = v.edges.at(z) * v.channel[k]
+	n := v.grid.points
+	for k := 0; k < n; k += 4 {
+		z, c, s := v.incoming[k:k+4], v.channel[k:k+4], spectrum[k:k+4]
+		y0, y1, y2, y3 := v.edges.atFour(z[0], z[1], z[2], z[3])
+		s[0], s[1], s[2], s[3] = y0*c[0], y1*c[1], y2*c[2], y3*c[3]
 	}
+	spectrum[n] = v.edges.at(v.incoming[n]) * v.channel[n]
 	v.cosine.transform(spectrum, spectrum)
 	scale := 1 / float64(2*v.grid.points)
 	for k := range spectrum {
