@@ -21,9 +21,9 @@ var seconds = regexp.MustCompile(`\b[0-9.]+ s\b`)
 // phases matches where the time went, of which small parts are left out.
 var phases = regexp.MustCompile(`(?m)^  time went to .*\n( {26}.*\n)*`)
 
-// transcript runs a command as a person at a shell would have typed it and
+// typed runs a command as a person at a shell would have typed it and
 // returns what the screen shows.
-func transcript(t *testing.T, line string) string {
+func typed(t *testing.T, line string) string {
 	t.Helper()
 	words, err := split(line)
 	if err != nil {
@@ -82,7 +82,7 @@ func rerun(t *testing.T, text string) string {
 		case inside && strings.HasPrefix(bare, "$ "):
 			skipping = true
 			out.WriteString(line)
-			out.WriteString(transcript(t, bare[2:]))
+			out.WriteString(typed(t, bare[2:]))
 			continue
 		}
 		if !skipping {
