@@ -1,6 +1,7 @@
 package de
 
 import (
+	"cmp"
 	"context"
 	"fmt"
 	"math"
@@ -21,14 +22,14 @@ type approach struct {
 	high  float64 // cannot be exceeded, or has failed
 	bound float64 // of the stability condition
 
-	unchecked bool // omit the run above the estimate
+	decoded float64 // the B at which a run ends without proof of success
 
 	runs       []course // that succeeded, in order of parameter
 	iterations int
-	tunnel     float64   // where the first tunnel closes, as last predicted
-	estimate   float64   // of the threshold: there, or at the bound
-	error      float64   // of tunnel: extrapolation and stopping rule
-	foundError float64   // what of error is from the grid that find was done on
+	tunnel     float64 // where the first tunnel closes, as last predicted
+	estimate   float64 // of the threshold: there, or at the bound
+	error      float64 // of tunnel
+	necks      []neck
 	critical   []closing // places where the tunnel closes, the first one first
 }
 
@@ -52,11 +53,6 @@ const (
 	// relative to it.
 	firstStride = 0.6
 	leastStart  = 0.02
-	// fairEstimate is how far an estimate may be off, in tolerances, for
-	// transfer to build on it, and transferGain by how much the difference
-	// of two grids in it is smaller than itself.
-	fairEstimate = 8
-	transferGain = 8
 	// leastCapacity is the capacity below which nothing is tried where neither
 	// the design rate nor stability bounds the threshold.
 	leastCapacity = 1e-4
@@ -92,7 +88,7 @@ func (a *approach) bracket(ctx context.Context) (why string, err error) {
 	certain := channel.ParameterAtBhattacharyya(a.f, onBEC.Value)
 	if a.f.Bhattacharyya(certain) > onBEC.Value {
 		// Not even the best channel of the family is that good.
-		c, err := evolve(ctx, a.e, a.grid, a.f, best, a.decoded())
+		c, err := evolve(ctx, a.e, a.grid, a.f, best, a.decoded)
 		if err != nil {
 			return "", err
 		}
@@ -120,46 +116,9 @@ func (a *approach) start() float64 {
 	return max((a.estimate-a.low)/4, leastStart*a.estimate)
 }
 
-// transfer finds the threshold on a finer grid from what was learned on a
-// coarser one. Three runs that gave a fair estimate there are repeated; what
-// was later found to be missing from that estimate is added, since the two
-// grids differ little. It reports false if the finer grid differs so much that
-// one of the runs fails.
-func (a *approach) transfer(ctx context.Context, coarse *approach, tolerance float64) (bool, error) {
-	a.runs = nil
-	fair := *coarse
-	for n := 3; ; n++ {
-		fair.runs = coarse.runs[:n]
-		fair.predict()
-		if n == len(coarse.runs) || math.Abs(fair.estimate-coarse.estimate) <= fairEstimate*tolerance {
-			break
-		}
-	}
-	for _, c := range fair.runs[len(fair.runs)-3:] {
-		if ok, err := a.run(ctx, c.parameter); !ok {
-			return false, err
-		}
-	}
-	a.predict()
-	missing := coarse.estimate - fair.estimate
-	a.tunnel += missing
-	a.estimate = min(a.tunnel, a.bound)
-	a.foundError = coarse.foundError
-	a.error = a.foundError + math.Abs(missing)/transferGain
-	return true, nil
-}
-
-// decoded is where a run ends without proof of success.
-func (a *approach) decoded() float64 {
-	if a.unchecked {
-		return shallow
-	}
-	return deep
-}
-
 // run evolves at one parameter and files the outcome.
 func (a *approach) run(ctx context.Context, parameter float64) (bool, error) {
-	c, err := evolve(ctx, a.e, a.grid, a.f, parameter, a.decoded())
+	c, err := evolve(ctx, a.e, a.grid, a.f, parameter, a.decoded)
 	a.iterations += len(c.rate)
 	if err != nil {
 		return false, err
@@ -185,7 +144,7 @@ func (a *approach) find(ctx context.Context, guess, distance, tolerance float64)
 	for range runCap {
 		if a.high-a.low <= tolerance {
 			a.tunnel, a.error = a.low+(a.high-a.low)/2, (a.high-a.low)/2
-			a.estimate, a.foundError = a.tunnel, a.error
+			a.estimate = a.tunnel
 			return nil
 		}
 		ok, err := a.run(ctx, next)
@@ -210,18 +169,7 @@ func (a *approach) find(ctx context.Context, guess, distance, tolerance float64)
 		last := a.runs[n-1].parameter
 		ahead := a.estimate - last
 		if ok && n > 2 && a.settled(previous, tolerance) {
-			above := a.estimate + ahead
-			if a.unchecked || above >= a.high {
-				return nil
-			}
-			// A run as far above the estimate as the last one is below it
-			// must not succeed.
-			if ok, err = a.run(ctx, above); !ok {
-				return err
-			}
-			a.predict()
-			last = a.runs[n].parameter
-			ahead = a.estimate - last
+			return nil
 		}
 		if ok {
 			next = a.below(last + ahead*(1-remaining))
@@ -240,7 +188,6 @@ func (a *approach) settled(previous, tolerance float64) bool {
 	if a.tunnel == previous {
 		a.error = 0 // where both are infinite
 	}
-	a.foundError = a.error
 	switch {
 	case a.estimate > a.high:
 		// A run has failed below it.
@@ -270,19 +217,22 @@ func (a *approach) predict() {
 	a.estimate = min(a.tunnel, a.bound)
 }
 
-// places lists the critical places of the last runs.
+// places lists the places where the tunnel closes at the threshold or little
+// behind it.
 func (a *approach) places() []Critical {
-	all := append([]closing{{parameter: a.bound}}, a.critical...)
-	first := all[0].parameter
-	for _, c := range all {
-		first = min(first, c.parameter)
+	all := []closing{{parameter: a.bound}}
+	for _, n := range a.necks {
+		all = append(all, closing{parameter: n.parameter, entropy: n.messages.Entropy()})
 	}
+	if len(a.necks) == 0 {
+		all = append(all, a.critical...)
+	}
+	slices.SortStableFunc(all, func(x, y closing) int { return cmp.Compare(x.parameter, y.parameter) })
 	var out []Critical
 	for _, c := range all {
-		if slack := c.parameter/first - 1; slack <= criticalSlack {
+		if slack := c.parameter/all[0].parameter - 1; slack <= criticalSlack {
 			out = append(out, Critical{Entropy: c.entropy, Slack: slack})
 		}
 	}
-	slices.SortStableFunc(out, func(x, y Critical) int { return int(math.Copysign(1, x.Slack-y.Slack)) })
 	return out
 }

@@ -21,6 +21,7 @@ import (
 type closing struct {
 	parameter float64
 	entropy   float64 // of the messages there
+	depth     float64
 }
 
 // minSkip is how many iterations at the beginning are left out: the density
@@ -44,7 +45,7 @@ func closings(runs []course) []closing {
 			continue
 		}
 		most := parabolaMaximum(near[i-1], near[i], near[i+1])
-		found = append(found, closing{last.parameter + 1/most, last.entropy[i]})
+		found = append(found, closing{parameter: last.parameter + 1/most, entropy: last.entropy[i], depth: last.depth[i]})
 	}
 	slices.SortStableFunc(found, func(a, b closing) int { return cmp.Compare(a.parameter, b.parameter) })
 	return found

@@ -54,7 +54,7 @@ func (c Course) Rate(depth float64) float64 {
 // the runs in increasing order of parameter. Its estimate lacks the check of a
 // run above it that QuantizedEngine makes.
 func Approach(ctx context.Context, e ensembles.Ensemble, g *density.Grid, f channel.Family, guess, distance, tolerance float64) (threshold float64, courses []Course, err error) {
-	a := approach{e: e, f: f, grid: g, unchecked: true}
+	a := approach{e: e, f: f, grid: g, decoded: shallow}
 	if _, err := a.bracket(ctx); err != nil {
 		return 0, nil, err
 	}

@@ -35,9 +35,10 @@ const (
 // Method returns Quantized.
 func (QuantizedEngine) Method() Method { return Quantized }
 
-// Threshold evolves the ensemble on grids of doubling fineness, on each of
-// which the threshold is extrapolated from runs below it (see closing.go),
-// until the thresholds of two grids agree.
+// Threshold finds the tunnels on a coarse grid by evolutions below the
+// threshold (see closing.go), then the fixed points at which they close (see
+// neck.go), and these again on grids of doubling fineness until the thresholds
+// of two grids agree.
 func (q QuantizedEngine) Threshold(ctx context.Context, e ensembles.Ensemble, f channel.Family) (Threshold, error) {
 	t := Threshold{Method: Quantized}
 	best, _ := f.Range()
@@ -53,7 +54,7 @@ func (q QuantizedEngine) Threshold(ctx context.Context, e ensembles.Ensemble, f 
 	if err != nil {
 		return t, err
 	}
-	a := approach{e: e, f: f, grid: grid}
+	a := approach{e: e, f: f, grid: grid, decoded: deep}
 	switch why, err := a.bracket(ctx); {
 	case err != nil:
 		return t, err
@@ -69,42 +70,41 @@ func (q QuantizedEngine) Threshold(ctx context.Context, e ensembles.Ensemble, f 
 	exactGrid := f.Name() == bec
 	if exactGrid {
 		// Masses at 0 and at infinity have nodes of their own, so that the
-		// grid makes no error and more can be asked of the approach.
+		// grid makes no error.
 		tolerance = min(tolerance, becTolerance)
 	}
-	absolute := tolerance * a.estimate / 4
 	bracketed := a
-	for points := coarsestPoints; ; points *= 2 {
-		coarse := a
-		a = bracketed
-		if a.grid, err = density.NewGrid(points); err != nil {
-			return t, err
-		}
-		found := false
-		if len(coarse.runs) >= 3 {
-			found, err = a.transfer(ctx, &coarse, absolute)
-		}
-		if !found && err == nil {
-			err = a.find(ctx, a.estimate, a.start(), absolute)
-		}
-		t.Iterations += a.iterations
-		if err != nil {
-			return t, err
-		}
-		t.Value = a.estimate
-		t.Uncertainty = a.error
-		if !exactGrid {
-			t.Uncertainty += math.Abs(a.estimate-coarse.estimate)/gridGain + gridError(points)*a.estimate
-		}
-		// Where the stability bound comes first, only what may bring the
-		// tunnel's closing below it counts.
-		t.Uncertainty = max(t.Uncertainty-(a.tunnel-a.estimate), 0)
-		t.Critical = a.places()
-		if (points > coarsestPoints || exactGrid) && t.Uncertainty <= tolerance*t.Value {
+	if err := a.locate(ctx, tolerance*a.estimate/4); err != nil {
+		return t, err
+	}
+	for points := coarsestPoints; ; {
+		t.Value, t.Iterations, t.Critical = a.estimate, a.iterations, a.places()
+		if exactGrid {
+			t.Uncertainty = a.error
 			return t, nil
 		}
 		if points == finestPoints {
 			t.Warnings = append(t.Warnings, fmt.Sprintf("the uncertainty asked for, %.2g, was not reached on the finest grid", tolerance*t.Value))
+			return t, nil
+		}
+		points *= 2
+		if grid, err = density.NewGrid(points); err != nil {
+			return t, err
+		}
+		coarse := a.estimate
+		if !a.refine(grid) {
+			bracketed.grid, bracketed.estimate, bracketed.iterations = grid, a.estimate, a.iterations
+			a = bracketed
+			if err := a.locate(ctx, tolerance*a.estimate/4); err != nil {
+				return t, err
+			}
+		}
+		t.Uncertainty = a.error + math.Abs(a.estimate-coarse)/gridGain + gridError(points)*a.estimate
+		// Where the stability bound comes first, only what may bring the
+		// tunnel's closing below it counts.
+		t.Uncertainty = max(t.Uncertainty-(a.tunnel-a.estimate), 0)
+		if t.Uncertainty <= tolerance*t.Value {
+			t.Value, t.Iterations, t.Critical = a.estimate, a.iterations, a.places()
 			return t, nil
 		}
 	}
@@ -124,5 +124,5 @@ const gridGain = 3
 // TestThresholdUncertainty holds it against finer grids.
 func gridError(points int) float64 {
 	ratio := 256 / float64(points)
-	return 7e-7*ratio*ratio*ratio*ratio + 3e-8
+	return 4e-6*ratio*ratio*ratio*ratio + 3e-8
 }

@@ -194,13 +194,42 @@ func TestThresholdUncertainty(t *testing.T) {
 	}
 }
 
-// onGrid returns the threshold on one grid.
+// Cases in which predictions of the threshold agree long before they are right,
+// and in which another of several tunnels closes first on a finer grid.
+func TestThresholdUncertaintyTraps(t *testing.T) {
+	rsu, ok := catalog.Lookup("rsu01-r50-d11")
+	if !ok {
+		t.Fatal("not in the catalogue")
+	}
+	for _, c := range []struct {
+		name string
+		e    ensembles.Ensemble
+		f    channel.Family
+	}{
+		{"agreement by accident", ensembles.Ensemble{
+			Lambda: distribution(t, "3:.34486,4:.15027,7:.50487"),
+			Rho:    distribution(t, "49:.55693,50:.44307"),
+		}, channel.BSC{}},
+		{"tunnels that change places", rsu.Ensemble, channel.BIAWGN{}},
+	} {
+		got := quantizedThreshold(t, c.e, c.f)
+		fine, err := onGrid(c.e, c.f, 1024, 1e-8)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if d := math.Abs(got.Value - fine); d > got.Uncertainty {
+			t.Errorf("%s: %.10g ± %.1g, on a finer grid %.10g", c.name, got.Value, got.Uncertainty, fine)
+		}
+	}
+}
+
+// onGrid returns the threshold on one grid by runs alone.
 func onGrid(e ensembles.Ensemble, f channel.Family, points int, tolerance float64) (float64, error) {
 	g, err := density.NewGrid(points)
 	if err != nil {
 		return 0, err
 	}
-	a := approach{e: e, f: f, grid: g}
+	a := approach{e: e, f: f, grid: g, decoded: deep}
 	ctx := context.Background()
 	if why, err := a.bracket(ctx); err != nil || why != "" || a.high <= a.low {
 		return a.high, err

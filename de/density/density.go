@@ -34,6 +34,20 @@ func (d *Density) Copy(src *Density) {
 	d.infinite = src.infinite
 }
 
+// Combine sets d to the sum of densities of its grid with weights that sum to
+// 1: a mixture where all are positive, else an interpolation or extrapolation.
+// Of may include d.
+func (d *Density) Combine(weight []float64, of []*Density) {
+	for k := range d.even {
+		sum := 0.0
+		for i, w := range weight {
+			sum += w * of[i].even[k]
+		}
+		d.even[k] = sum
+	}
+	d.settle()
+}
+
 // Grid returns the grid that d lives on.
 func (d *Density) Grid() *Grid { return d.grid }
 

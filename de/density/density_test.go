@@ -380,3 +380,22 @@ func TestApplyAllocatesNothing(t *testing.T) {
 		t.Errorf("%g allocations per step", n)
 	}
 }
+
+// A density on a grid of twice the points says the same where it is smooth.
+func TestRefine(t *testing.T) {
+	coarse, fine := grid(t, 128), grid(t, 256)
+	for _, sigma := range []float64{.6, .9, 1.5} {
+		c := channel.BIAWGN{}.Density(sigma)
+		got, want := fine.Refine(coarse.Project(c)), fine.Project(c)
+		if d := math.Abs(got.Bhattacharyya() - want.Bhattacharyya()); d > 1e-5 {
+			t.Errorf("σ = %g: Bhattacharyya parameters differ by %g", sigma, d)
+		}
+		if d := math.Abs(got.Entropy() - want.Entropy()); d > 1e-5 {
+			t.Errorf("σ = %g: entropies differ by %g", sigma, d)
+		}
+	}
+	erasures := channel.BEC{}.Density(.3)
+	if got := fine.Refine(coarse.Project(erasures)); math.Abs(got.Erased()-.3) > 1e-15 || math.Abs(got.Infinite()-.7) > 1e-15 {
+		t.Errorf("erasures of .3: %g erased, %g known", got.Erased(), got.Infinite())
+	}
+}

@@ -31,7 +31,7 @@ func (g *Grid) NewVariableNode(lambda ensembles.Distribution, channel *Density) 
 		incoming: make([]float64, g.points+1),
 		errors:   make([]float64, g.points+1),
 	}
-	v.cosine.transform(v.channel, channel.even)
+	v.SetChannel(channel)
 	// The error probability is Σ wₖgₖ with g the inverse transform. As the
 	// transform counts inner values twice, so do the weights of its adjoint.
 	for k, w := range g.errorWeight {
@@ -45,6 +45,12 @@ func (g *Grid) NewVariableNode(lambda ensembles.Distribution, channel *Density) 
 		v.errors[k] *= 2
 	}
 	return v
+}
+
+// SetChannel replaces the density of the channel's LLR by another of the
+// operation's grid.
+func (v *VariableNode) SetChannel(channel *Density) {
+	v.cosine.transform(v.channel, channel.even)
 }
 
 // Apply sets dst to the density of the outgoing messages for incoming ones of
