@@ -24,6 +24,7 @@ func newShell(t *testing.T) shell {
 	return shell{t, map[string]func(string) string{
 		"draw-profile":     func(string) string { return profileText },
 		"construct-matrix": func(string) string { return "" },
+		"use-matrix":       func(string) string { return "" },
 		"man":              func(string) string { return "" },
 	}}
 }
@@ -127,7 +128,7 @@ func stock(t *testing.T, c *cobra.Command, testdata string) {
 	if strings.Contains(c.Use, "BRIEF") {
 		harbour = "briefs/harbour.yaml"
 	}
-	for name, source := range map[string]string{"harbour.yaml": harbour, "buoy.csv": "channels/buoy.csv", "receiver.csv": "channels/receiver.csv"} {
+	for name, source := range map[string]string{"harbour.yaml": harbour, "buoy.csv": "channels/buoy.csv", "receiver.csv": "channels/receiver.csv", "buoys.mtx": "matrices/buoys.mtx"} {
 		content, err := os.ReadFile(filepath.Join(testdata, source))
 		if err != nil {
 			t.Fatal(err)

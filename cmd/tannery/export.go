@@ -68,7 +68,7 @@ func runExport(cmd *cobra.Command, args []string, o *exportOptions) error {
 		return err
 	}
 	warn(cmd, warnings)
-	out, err := openProfileOutput(cmd, o.output)
+	out, err := openProductOutput(cmd, o.output)
 	if err != nil {
 		return err
 	}
@@ -106,7 +106,7 @@ func runExport(cmd *cobra.Command, args []string, o *exportOptions) error {
 		_, err := p.WriteTo(cmd.OutOrStdout())
 		return err
 	}
-	return out.deliver(p, answer)
+	return out.deliverProfile(p, answer)
 }
 
 // meter measures thresholds on one channel by one method.
@@ -126,7 +126,17 @@ func (o *exportOptions) meters(cmd *cobra.Command, p ensembles.Profile) ([]meter
 		engine, err := o.engine(f)
 		return []meter{{f, engine}}, err
 	}
-	var meters []meter
+	meters, unusable := resultMeters(p)
+	warn(cmd, unusable)
+	if len(p.Results) == 0 {
+		warn(cmd, []string{"no thresholds of the integer profile, because neither the profile's results nor --channel name a channel"})
+	}
+	return meters, nil
+}
+
+// resultMeters returns one meter for each channel and method among the results
+// of a profile, and warnings about those that there is none for.
+func resultMeters(p ensembles.Profile) (meters []meter, unusable []string) {
 	for _, r := range p.Results {
 		f, err := channel.ByName(r.Channel)
 		if err == nil {
@@ -138,12 +148,9 @@ func (o *exportOptions) meters(cmd *cobra.Command, p ensembles.Profile) ([]meter
 				continue
 			}
 		}
-		warn(cmd, []string{fmt.Sprintf("no threshold of the integer profile for channel %s, method %s: %v", r.Channel, r.Method, err)})
+		unusable = append(unusable, fmt.Sprintf("no threshold of the integer profile for channel %s, method %s: %v", r.Channel, r.Method, err))
 	}
-	if len(p.Results) == 0 {
-		warn(cmd, []string{"no thresholds of the integer profile, because neither the profile's results nor --channel name a channel"})
-	}
-	return meters, nil
+	return meters, unusable
 }
 
 func (m meter) is(channel, method string) bool {

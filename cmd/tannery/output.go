@@ -3,6 +3,7 @@ package main
 import (
 	"errors"
 	"fmt"
+	"io"
 	"io/fs"
 	"math/rand/v2"
 	"os"
@@ -70,21 +71,33 @@ func prepareOutput(path string) (*outputFile, error) {
 
 // write stores the content under the target's name.
 func (o *outputFile) write(content []byte) error {
-	if err := o.store(content); err != nil {
+	return o.stream(func(w io.Writer) error {
+		_, err := w.Write(content)
+		return err
+	})
+}
+
+// stream stores what the function writes under the target's name.
+func (o *outputFile) stream(write func(io.Writer) error) error {
+	if err := o.store(write); err != nil {
 		return outputError("", o.path, err)
 	}
 	return nil
 }
 
-func (o *outputFile) store(content []byte) error {
+func (o *outputFile) store(write func(io.Writer) error) error {
 	if o.direct {
-		return os.WriteFile(o.path, content, o.mode)
+		f, err := os.OpenFile(o.path, os.O_WRONLY, 0)
+		if err != nil {
+			return err
+		}
+		return errors.Join(write(f), f.Close())
 	}
 	f, err := o.temporary()
 	if err != nil {
 		return err
 	}
-	_, err = f.Write(content)
+	err = write(f)
 	if err == nil && o.exists {
 		err = f.Chmod(o.mode)
 	}

@@ -106,3 +106,13 @@ func atMost(n int, what string) cobra.PositionalArgs {
 		return nil
 	}
 }
+
+// exactly is atMost for arguments that must be there.
+func exactly(n int, what string) cobra.PositionalArgs {
+	return func(cmd *cobra.Command, args []string) error {
+		if len(args) < n {
+			return usagef("%s: missing; tannery %s --help shows how it is used", what, cmd.Name())
+		}
+		return atMost(n, what)(cmd, args)
+	}
+}

@@ -84,7 +84,7 @@ func runSearch(cmd *cobra.Command, args []string, o *searchOptions) error {
 	if err != nil {
 		return err
 	}
-	out, err := openProfileOutput(cmd, o.output)
+	out, err := openProductOutput(cmd, o.output)
 	if err != nil {
 		return err
 	}
@@ -134,7 +134,7 @@ func runSearch(cmd *cobra.Command, args []string, o *searchOptions) error {
 	if kept != nil && !settled {
 		answer.Checkpoint = kept.path
 	}
-	if err := out.deliver(p, answer); err != nil {
+	if err := out.deliverProfile(p, answer); err != nil {
 		return err
 	}
 	done = settled
@@ -146,7 +146,7 @@ func runSearch(cmd *cobra.Command, args []string, o *searchOptions) error {
 
 // openCheckpoint opens the checkpoint asked for, or the one beside the output;
 // nil without either, or for a method that has none.
-func (o *searchOptions) openCheckpoint(cmd *cobra.Command, b brief.Brief, m optimize.Method, out *profileOutput) (*checkpoint, []byte, error) {
+func (o *searchOptions) openCheckpoint(cmd *cobra.Command, b brief.Brief, m optimize.Method, out *productOutput) (*checkpoint, []byte, error) {
 	path := o.checkpoint
 	given := cmd.Flags().Changed("checkpoint")
 	_, resumable := m.(optimize.QuantizedDesign)

@@ -20,6 +20,14 @@ const (
 	Randomized Method = "randomized"
 )
 
+// MethodFor returns the method that Build chooses by itself for a length.
+func MethodFor(length int) Method {
+	if length > PracticalGrowth {
+		return Randomized
+	}
+	return Growth
+}
+
 // PracticalGrowth is the greatest length for which Build chooses Growth by
 // itself.
 const PracticalGrowth = 100_000
@@ -70,10 +78,7 @@ func Build(ctx context.Context, r ensembles.Realization, s Settings) (*Graph, er
 		return nil, fmt.Errorf("girth %d: must be an even number from 4 to 12", s.Girth)
 	}
 	if s.Method == "" {
-		s.Method = Growth
-		if r.Length > PracticalGrowth {
-			s.Method = Randomized
-		}
+		s.Method = MethodFor(r.Length)
 	}
 	if s.Progress == nil {
 		s.Progress = func(int, int) {}

@@ -28,7 +28,7 @@ func TestMatrixRoundTrip(t *testing.T) {
 	if err := WriteMatrix(&file, g, label); err != nil {
 		t.Fatal(err)
 	}
-	back, read, err := ReadMatrix(iotest.OneByteReader(bytes.NewReader(file.Bytes())))
+	back, read, err := ReadMatrix("matrix", iotest.OneByteReader(bytes.NewReader(file.Bytes())))
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -36,7 +36,7 @@ func TestMatrixRoundTrip(t *testing.T) {
 		t.Errorf("read back a different graph or label %+v", read)
 	}
 	// The other line end, and the node counts.
-	back, _, err = ReadMatrix(bytes.NewReader(bytes.ReplaceAll(file.Bytes(), []byte("\n"), []byte("\r\n"))))
+	back, _, err = ReadMatrix("matrix", bytes.NewReader(bytes.ReplaceAll(file.Bytes(), []byte("\n"), []byte("\r\n"))))
 	if err != nil || !same(g, back) {
 		t.Errorf("with CR LF: %v", err)
 	}
@@ -51,7 +51,7 @@ func TestMatrixLabelStaysOnItsLine(t *testing.T) {
 	if err := WriteMatrix(&file, g, Label{Title: "two\n1 1 lines\r\n"}); err != nil {
 		t.Fatal(err)
 	}
-	if _, label, err := ReadMatrix(&file); err != nil || label.Title != "two 1 1 lines" {
+	if _, label, err := ReadMatrix("matrix", &file); err != nil || label.Title != "two 1 1 lines" {
 		t.Errorf("title %q, error %v", label.Title, err)
 	}
 }
@@ -59,34 +59,34 @@ func TestMatrixLabelStaysOnItsLine(t *testing.T) {
 func TestReadMatrix(t *testing.T) {
 	const head = banner + "\n"
 	for _, test := range []struct{ name, text, want string }{
-		{"empty", "", "line 1: the file ends here"},
-		{"banner only", head, "line 1: the file ends here: the line of rows"},
-		{"other format", "%%MatrixMarket matrix array real general\n1 1\n1\n", "line 1: \"%%MatrixMarket matrix array real general\": must be %%MatrixMarket matrix coordinate pattern general"},
-		{"no banner", "2 2 2\n1 1\n2 2\n", "line 1:"},
+		{"empty", "", "matrix:1: the file ends here"},
+		{"banner only", head, "matrix:1: the file ends here: the line of rows"},
+		{"other format", "%%MatrixMarket matrix array real general\n1 1\n1\n", "matrix:1: \"%%MatrixMarket matrix array real general\": must be %%MatrixMarket matrix coordinate pattern general"},
+		{"no banner", "2 2 2\n1 1\n2 2\n", "matrix:1:"},
 		{"any case", "%%matrixmarket MATRIX Coordinate pattern General\n1 1 1\n1 1\n", ""},
 		{"comments and blank lines", head + "%\n% note: any\n\n1 2 2\n\n% here too\n1 1\n1\t2 \n\n%end", ""},
 		{"no last line end", head + "1 1 1\n1 1", ""},
-		{"two numbers", head + "2 2\n", "line 2: \"2 2\": must be ROWS COLUMNS ENTRIES"},
-		{"no rows", head + "0 2 2\n", "line 2: 0 rows and 2 columns: must be at least 1"},
-		{"fraction", head + "2.5 2 2\n", "line 2: \"2.5 2 2\": must be ROWS"},
-		{"negative", head + "2 -2 2\n", "line 2:"},
-		{"a promise of rows", head + "2000000000 2 4\n", "line 2: 2000000000 rows and 4 entries"},
-		{"a promise of columns", head + "2 2000000000 4\n", "line 2: 2000000000 columns and 4 entries"},
-		{"a promise of entries", head + "2 2 9000000000\n", "line 2: 9000000000 entries: must be at most 2147483647"},
-		{"a number beyond all", head + "2 2 99999999999999999999\n", "line 2: \"2 2 99999999999999999999\": numbers must be at most"},
-		{"a promise not kept", head + "1000000000 1000000000 2000000000\n1 1\n", "line 3: the file ends here: there are 1 entries of the 2000000000 announced"},
-		{"truncated", head + "2 2 3\n1 1\n2 2\n", "line 4: the file ends here: there are 2 entries of the 3 announced"},
-		{"too many", head + "1 1 1\n1 1\n1 1\n", "line 4: \"1 1\": more than the 1 entries announced"},
-		{"row out of range", head + "2 2 2\n1 1\n3 2\n", "line 4: row 3: must be from 1 to 2"},
-		{"column zero", head + "2 2 2\n1 0\n2 2\n", "line 3: column 0: must be from 1 to 2"},
-		{"value", head + "1 1 1\n1 1 1.0\n", "line 3: \"1 1 1.0\": must be ROW COLUMN and nothing else"},
-		{"repeated", head + "2 2 4\n1 1\n% between\n2 2\n2 1\n\n2 2\n", "line 8: row 2, column 2: repeats the entry of line 5"},
-		{"empty row", head + "3 2 3\n1 1\n3 2\n3 1\n", "row 2 of 3: must have an entry"},
-		{"empty column", head + "2 3 3\n1 1\n2 3\n1 3\n", "column 2 of 3: must have an entry"},
+		{"two numbers", head + "2 2\n", "matrix:2: \"2 2\": must be ROWS COLUMNS ENTRIES"},
+		{"no rows", head + "0 2 2\n", "matrix:2: 0 rows and 2 columns: must be at least 1"},
+		{"fraction", head + "2.5 2 2\n", "matrix:2: \"2.5 2 2\": must be ROWS"},
+		{"negative", head + "2 -2 2\n", "matrix:2:"},
+		{"a promise of rows", head + "2000000000 2 4\n", "matrix:2: 2000000000 rows and 4 entries"},
+		{"a promise of columns", head + "2 2000000000 4\n", "matrix:2: 2000000000 columns and 4 entries"},
+		{"a promise of entries", head + "2 2 9000000000\n", "matrix:2: 9000000000 entries: must be at most 2147483647"},
+		{"a number beyond all", head + "2 2 99999999999999999999\n", "matrix:2: \"2 2 99999999999999999999\": numbers must be at most"},
+		{"a promise not kept", head + "1000000000 1000000000 2000000000\n1 1\n", "matrix:3: the file ends here: there are 1 entries of the 2000000000 announced"},
+		{"truncated", head + "2 2 3\n1 1\n2 2\n", "matrix:4: the file ends here: there are 2 entries of the 3 announced"},
+		{"too many", head + "1 1 1\n1 1\n1 1\n", "matrix:4: \"1 1\": more than the 1 entries announced"},
+		{"row out of range", head + "2 2 2\n1 1\n3 2\n", "matrix:4: row 3: must be from 1 to 2"},
+		{"column zero", head + "2 2 2\n1 0\n2 2\n", "matrix:3: column 0: must be from 1 to 2"},
+		{"value", head + "1 1 1\n1 1 1.0\n", "matrix:3: \"1 1 1.0\": must be ROW COLUMN and nothing else"},
+		{"repeated", head + "2 2 4\n1 1\n% between\n2 2\n2 1\n\n2 2\n", "matrix:8: row 2, column 2: repeats the entry of line 5"},
+		{"empty row", head + "3 2 3\n1 1\n3 2\n3 1\n", "matrix: row 2 of 3: must have an entry"},
+		{"empty column", head + "2 3 3\n1 1\n2 3\n1 3\n", "matrix: column 2 of 3: must have an entry"},
 		{"long comment", head + "%" + strings.Repeat("x", 3*maxLine) + "\n1 1 1\n1 1\n", ""},
-		{"long line", head + strings.Repeat("1", 3*maxLine), "line 2:"},
+		{"long line", head + strings.Repeat("1", 3*maxLine), "matrix:2:"},
 	} {
-		_, _, err := ReadMatrix(strings.NewReader(test.text))
+		_, _, err := ReadMatrix("matrix", strings.NewReader(test.text))
 		switch {
 		case test.want == "" && err != nil:
 			t.Errorf("%s: %v", test.name, err)
@@ -99,7 +99,7 @@ func TestReadMatrix(t *testing.T) {
 func TestReadMatrixReportsReaderErrors(t *testing.T) {
 	fault := errors.New("cable cut")
 	r := io.MultiReader(strings.NewReader(banner+"\n2 2 3\n1 1\n"), iotest.ErrReader(fault))
-	if _, _, err := ReadMatrix(r); !errors.Is(err, fault) {
+	if _, _, err := ReadMatrix("matrix", r); !errors.Is(err, fault) {
 		t.Errorf("error %v, want %v", err, fault)
 	}
 }
@@ -111,7 +111,7 @@ func FuzzReadMatrix(f *testing.F) {
 	f.Add([]byte("%%MatrixMarket matrix coordinate pattern symmetric\n"))
 	f.Add([]byte(banner + "\n999999999 999999999 2147483647\n1 1\n"))
 	f.Fuzz(func(t *testing.T, data []byte) {
-		g, label, err := ReadMatrix(bytes.NewReader(data))
+		g, label, err := ReadMatrix("matrix", bytes.NewReader(data))
 		if err != nil {
 			return
 		}
@@ -122,7 +122,7 @@ func FuzzReadMatrix(f *testing.F) {
 		if err := WriteMatrix(&file, g, label); err != nil {
 			t.Fatal(err)
 		}
-		again, relabel, err := ReadMatrix(&file)
+		again, relabel, err := ReadMatrix("matrix", &file)
 		if err != nil || !same(g, again) || label != relabel {
 			t.Fatalf("not the same when read again: %v, %+v, %+v", err, label, relabel)
 		}
@@ -162,7 +162,7 @@ func BenchmarkReadMatrix(b *testing.B) {
 	}
 	b.SetBytes(int64(file.Len()))
 	for b.Loop() {
-		if _, _, err := ReadMatrix(bytes.NewReader(file.Bytes())); err != nil {
+		if _, _, err := ReadMatrix("matrix", bytes.NewReader(file.Bytes())); err != nil {
 			b.Fatal(err)
 		}
 	}

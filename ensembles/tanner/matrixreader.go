@@ -18,15 +18,16 @@ const maxLine = 1 << 16
 // matrix: rows are check nodes and columns variable nodes. Comments and blank
 // lines may stand anywhere after the first line, and lines may end with CR
 // LF. Every row and every column must have an entry and no entry may be
-// repeated. Errors begin with the number of the line at fault. Memory grows
-// with what has been read, never with what the size line promises.
-func ReadMatrix(r io.Reader) (*Graph, Label, error) {
+// repeated. Errors begin with the name of the file and the number of the line
+// at fault. Memory grows with what has been read, never with what the size line
+// promises.
+func ReadMatrix(name string, r io.Reader) (*Graph, Label, error) {
 	m := matrixReader{lines: bufio.NewReaderSize(r, maxLine)}
 	if err := m.read(); err != nil {
 		if m.line > 0 {
-			err = fmt.Errorf("line %d: %w", m.line, err)
+			return nil, Label{}, fmt.Errorf("%s:%d: %w", name, m.line, err)
 		}
-		return nil, Label{}, err
+		return nil, Label{}, fmt.Errorf("%s: %w", name, err)
 	}
 	return m.graph, m.label, nil
 }

@@ -1,6 +1,7 @@
 package main
 
 import (
+	"io"
 	"os"
 	"strconv"
 	"time"
@@ -23,18 +24,18 @@ func now() time.Time {
 	return time.Now().UTC().Truncate(time.Second)
 }
 
-// profileOutput sends a profile and the report about it their ways: the
-// profile to a file and the report to standard output, or the profile to
-// standard output and the report to standard error.
-type profileOutput struct {
+// productOutput sends what a command makes, a profile or a matrix, and the
+// report about it their ways: the product to a file and the report to standard
+// output, or the product to standard output and the report to standard error.
+type productOutput struct {
 	cmd  *cobra.Command
 	file *outputFile // nil unless a file was asked for
 	path string      // "" for none, "-" for standard output
 }
 
-// openProfileOutput finds out whether the output can be written.
-func openProfileOutput(cmd *cobra.Command, path string) (*profileOutput, error) {
-	out := &profileOutput{cmd: cmd, path: path}
+// openProductOutput finds out whether the output can be written.
+func openProductOutput(cmd *cobra.Command, path string) (*productOutput, error) {
+	out := &productOutput{cmd: cmd, path: path}
 	if path == "-" || !cmd.Flags().Changed("output") {
 		return out, nil
 	}
@@ -43,21 +44,29 @@ func openProfileOutput(cmd *cobra.Command, path string) (*profileOutput, error) 
 	return out, err
 }
 
-// deliver writes the profile first, so that a reader of the report who goes
-// away costs nothing.
-func (o *profileOutput) deliver(p ensembles.Profile, a answer) error {
+// deliverProfile delivers a profile as YAML.
+func (o *productOutput) deliverProfile(p ensembles.Profile, a answer) error {
 	content, err := p.Encode()
 	if err != nil {
 		return err
 	}
+	return o.deliver(func(w io.Writer) error {
+		_, err := w.Write(content)
+		return err
+	}, a)
+}
+
+// deliver writes the product first, so that a reader of the report who goes
+// away costs nothing.
+func (o *productOutput) deliver(write func(io.Writer) error, a answer) error {
 	reports := o.cmd.OutOrStdout()
 	switch {
 	case o.file != nil:
-		if err := o.file.write(content); err != nil {
+		if err := o.file.stream(write); err != nil {
 			return err
 		}
 	case o.path == "-":
-		if _, err := o.cmd.OutOrStdout().Write(content); err != nil {
+		if err := write(o.cmd.OutOrStdout()); err != nil {
 			return err
 		}
 		if quiet(o.cmd) {

@@ -1,0 +1,60 @@
+package main
+
+import (
+	"context"
+	"slices"
+
+	"github.com/spf13/cobra"
+
+	"tannery/cmd/tannery/internal/report"
+	"tannery/ensembles/tanner"
+)
+
+// graphOptions are those of commands that measure a Tanner graph.
+type graphOptions struct {
+	rank       bool
+	noProgress bool
+}
+
+// rankGap is the largest gap of the approximate triangle up to which the rank
+// is computed unasked: the time grows with its third power.
+const rankGap = 8192
+
+func (o *graphOptions) add(cmd *cobra.Command) {
+	cmd.Flags().BoolVar(&o.rank, "rank", false, "compute the rank even of a very long code, for minutes")
+	cmd.Flags().BoolVar(&o.noProgress, "no-progress", false, "no progress on standard error")
+}
+
+// measure finds out about a graph what decides decoding and encoding.
+func (o *graphOptions) measure(cmd *cobra.Command, g *tanner.Graph, shown *progress) (report.Graph, error) {
+	ctx := cmd.Context()
+	shown.update("counting cycles", 0, "", 0)
+	cycles, err := g.ShortestCycles(ctx)
+	if err != nil {
+		return report.Graph{}, context.Cause(ctx)
+	}
+	shown.update("making a triangle", 0, "", 0)
+	triangle := g.Triangulate()
+	r := report.Graph{
+		Length:     g.Variables(),
+		Checks:     g.Checks(),
+		Edges:      g.Edges(),
+		DesignRate: 1 - float64(g.Checks())/float64(g.Variables()),
+		Girth:      cycles.Girth,
+		Cycles:     cycles.Total,
+		CyclesMean: float64(cycles.Total) * float64(cycles.Girth) / 2 / float64(g.Variables()),
+		CyclesMost: slices.Max(cycles.PerVariable),
+		Gap:        triangle.Gap(),
+		Digest:     g.Digest(),
+	}
+	if o.rank || triangle.Gap() <= rankGap {
+		shown.update("computing the rank", 0, "", 0)
+		rank, err := triangle.Rank(ctx)
+		if err != nil {
+			return report.Graph{}, context.Cause(ctx)
+		}
+		rate := 1 - float64(rank)/float64(g.Variables())
+		r.Rank, r.Rate = &rank, &rate
+	}
+	return r, nil
+}
