@@ -84,7 +84,7 @@ func openState(path string, head checkpointFile) (c *checkpoint, state []byte, e
 	case err != nil:
 		return nil, nil, outputError("--checkpoint", path, err)
 	case !ok:
-		return nil, nil, usagef("%s: found in use by another search; allowed: to wait for it, or another --checkpoint", path)
+		return nil, nil, usagef("%s: found in use by another process; allowed: to wait for it, or another --checkpoint", path)
 	}
 	c.lock = lock
 	if state, err = c.read(); err == nil {

@@ -256,7 +256,7 @@ func TestCheckpointInUse(t *testing.T) {
 		t.Fatal(ok, err)
 	}
 	code, stdout, stderr := command(t, "", strings.Fields(resumableSearch+"--evaluations 12 -o "+file)...)
-	if want := "tannery: " + file + ".checkpoint: found in use by another search; allowed: to wait for it, or another --checkpoint\n"; code != exitUsage || stdout != "" || stderr != want {
+	if want := "tannery: " + file + ".checkpoint: found in use by another process; allowed: to wait for it, or another --checkpoint\n"; code != exitUsage || stdout != "" || stderr != want {
 		t.Errorf("code %d, stdout %q\n got %swant %s", code, stdout, stderr, want)
 	}
 	unlockFile(lock)

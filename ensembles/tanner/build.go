@@ -61,7 +61,9 @@ type Settings struct {
 }
 
 // Build constructs a graph with exactly the node counts of r and no repeated
-// edges. The columns are in decreasing order of degree. It returns an error
+// edges. The columns are in decreasing order of degree. Where the variable
+// nodes of degree 2 are fewer than the check nodes they form no cycle among
+// themselves, unless the graph is so small and dense that there is no room. It returns an error
 // if the counts are inconsistent or no such graph exists, if a chain is
 // impossible, if settings are out of range, and ctx.Err() when ctx ends.
 func Build(ctx context.Context, r ensembles.Realization, s Settings) (*Graph, error) {
@@ -90,9 +92,20 @@ func Build(ctx context.Context, r ensembles.Realization, s Settings) (*Graph, er
 	}
 	switch s.Method {
 	case Growth:
-		err = plan.grow(ctx, random, s.Progress)
+		if err = plan.grow(ctx, random, s.Progress); err == nil {
+			// What has grown without a cycle is to stay so.
+			if first, acyclic := plan.degreeTwo(); acyclic {
+				plan.frozen = first
+			}
+		}
 	case Randomized:
-		err = plan.scatter(ctx, random)
+		planted := plan.plant(random)
+		if err = plan.scatter(ctx, random); err != nil && planted && ctx.Err() == nil {
+			// The rest of a small dense graph may not fit around it.
+			if plan, err = layOut(r, s.Chain, random); err == nil {
+				err = plan.scatter(ctx, random)
+			}
+		}
 	default:
 		err = fmt.Errorf("construction %q: must be %q or %q", s.Method, Growth, Randomized)
 	}

@@ -254,3 +254,27 @@ func BenchmarkRandomized1000000(b *testing.B) {
 	b.ReportAllocs()
 	benchmarkBuild(b, satellite(1_000_000), Settings{Method: Randomized, Chain: true})
 }
+
+// Variable nodes of degree 2 form no cycle among themselves: with the check
+// nodes as nodes and them as edges, the graph is a forest.
+func TestDegreeTwoFormsForest(t *testing.T) {
+	for _, length := range []int{200, 600, 2000} {
+		for _, method := range []Method{Growth, Randomized} {
+			for _, chain := range []bool{false, true} {
+				g, err := Build(context.Background(), satellite(length), Settings{Method: method, Seed: 3, Chain: chain})
+				if err != nil {
+					t.Fatal(err)
+				}
+				forest := newTrees(g.Checks())
+				for v := range g.Variables() {
+					if ends := g.ChecksOf(v); len(ends) == 2 {
+						if forest.root(ends[0]) == forest.root(ends[1]) {
+							t.Errorf("length %d, %s, chain %v: column %d closes a cycle of degree 2", length, method, chain, v)
+						}
+						forest.unite(ends[0], ends[1])
+					}
+				}
+			}
+		}
+	}
+}

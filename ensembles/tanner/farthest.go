@@ -15,10 +15,13 @@ const (
 	leastReach       = 4000
 	growthShare      = 4
 	growthCandidates = 12
+	// drawTries is how often a socket is drawn before all are looked through.
+	drawTries = 64
 )
 
 // farsight finds the check node to which a variable node should be joined.
 type farsight struct {
+	sockets         *sockets
 	shelf           *shelf
 	variable, check *probe // the searches from either side
 	random          *rand.Rand
@@ -26,11 +29,11 @@ type farsight struct {
 }
 
 func newFarsight(s *sockets, h *shelf, random *rand.Rand) *farsight {
-	return &farsight{h, newProbe(s), newProbe(s), random, max(leastReach, growthWork/max(1, len(s.mate)))}
+	return &farsight{s, h, newProbe(s), newProbe(s), random, max(leastReach, growthWork/max(1, len(s.mate)))}
 }
 
 // farthest returns the check node with free sockets that is farthest from v,
-// the emptiest of them if there are several; -1 if v is joined to all. Where
+// by a random free socket if there are several; -1 if v is joined to all. Where
 // the reach ends the search, it is the best of a random sample.
 func (f *farsight) farthest(v int32) int32 {
 	h, p := f.shelf, f.variable
@@ -38,10 +41,10 @@ func (f *farsight) farthest(v int32) int32 {
 	unseen := h.count
 	p.varMark[v].search = search
 	p.frontier = p.frontier[:0]
-	for _, c := range h.s.checksOf(v) {
+	for _, c := range f.sockets.checksOf(v) {
 		p.checkMark[c].search = search
 		p.frontier = append(p.frontier, c)
-		if h.row[c] >= 0 {
+		if h.row[c] > 0 {
 			unseen--
 		}
 	}
@@ -52,12 +55,14 @@ func (f *farsight) farthest(v int32) int32 {
 		if work > 0 && work+step/len(p.next)*len(p.frontier) > f.reach {
 			break
 		}
-		level := len(h.rows)
+		sockets := int32(0)
 		step = p.leap(search, func(c int32) bool {
-			if l := h.row[c]; l >= 0 {
+			if h.row[c] > 0 {
 				unseen--
-				if l < level {
-					level, best = l, c
+				// Each socket met so far stays chosen with equal chances.
+				free := h.row[c]
+				if sockets += free; f.random.Int32N(sockets) < free {
+					best = c
 				}
 			}
 			return unseen > 0
@@ -70,35 +75,47 @@ func (f *farsight) farthest(v int32) int32 {
 }
 
 // sample returns the farthest of growthCandidates check nodes that the search
-// from the variable node has not met, taken from the emptiest levels of the
-// shelf in random order; there must be one. The first that keeps clear of
-// that search within its own reach is good enough.
+// from the variable node has not met, drawn by their free sockets; there must
+// be one. The first that keeps clear of that search within its own reach is
+// good enough.
 func (f *farsight) sample(search int32) int32 {
-	best, most, tried := int32(-1), -1, 0
-	for _, row := range f.shelf.rows {
-		if len(row) == 0 {
-			continue
+	best, most := int32(-1), -1
+	for range growthCandidates {
+		c := f.draw(search)
+		distance, clear := f.distance(c, search)
+		if clear {
+			return c
 		}
-		offset := f.random.IntN(len(row))
-		for _, part := range [2][]int32{row[offset:], row[:offset]} {
-			for _, c := range part {
-				if f.variable.checkMark[c].search == search {
-					continue
-				}
-				distance, clear := f.distance(c, search)
-				if clear {
-					return c
-				}
-				if distance > most {
-					best, most = c, distance
-				}
-				if tried++; tried == growthCandidates {
-					return best
-				}
-			}
+		if distance > most {
+			best, most = c, distance
 		}
 	}
 	return best
+}
+
+// draw returns a random check node that the search has not met, by a random
+// free socket or, where most have been met, the next one on the shelf.
+func (f *farsight) draw(search int32) int32 {
+	h := f.shelf
+	met := func(c int32) bool { return f.variable.checkMark[c].search == search }
+	for range drawTries {
+		if c := h.draw(f.random); !met(c) {
+			return c
+		}
+	}
+	start := f.random.IntN(h.count)
+	for _, part := range [2]bool{false, true} {
+		i := 0
+		for _, row := range h.rows {
+			for _, c := range row {
+				if (i >= start) != part && !met(c) {
+					return c
+				}
+				i++
+			}
+		}
+	}
+	panic("tanner: no check node beyond the search")
 }
 
 // distance returns how many steps from check node to check node lead from c

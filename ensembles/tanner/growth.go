@@ -9,10 +9,10 @@ import (
 // IEEE Trans. Inf. Theory 51(1), 2005): variable nodes in increasing order of
 // degree, edge by edge, each to a check node as far away as possible in the
 // graph so far. Here check nodes too have prescribed degrees: only those with
-// free sockets are candidates, and among equally good ones those win that
-// have the least fraction of their sockets in use, so that all fill at the
-// same pace and the last, largest variable nodes still find enough different
-// ones.
+// free sockets are candidates, and equally good ones are drawn by their free
+// sockets. To take the emptiest instead, as the paper does, gives every check
+// node the same mixture of neighbours, which is another ensemble than the
+// profile's: with λ near the stability bound its threshold was 0.2 dB worse.
 func (s *sockets) grow(ctx context.Context, random *rand.Rand, progress func(done, total int)) error {
 	shelf := newShelf(s)
 	f := newFarsight(s, shelf, random)

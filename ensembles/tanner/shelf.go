@@ -1,61 +1,65 @@
 package tanner
 
-import "slices"
+import "math/rand/v2"
 
-// shelf keeps the check nodes that have free sockets, sorted by the fraction
-// of their sockets in use.
+// shelf keeps the check nodes that have free sockets, by their number.
 type shelf struct {
-	s     *sockets
-	level map[[2]int32]int // by sockets in use and degree
-	rows  [][]int32        // check nodes on each level, the emptiest first
-	row   []int            // level of each check node, -1 if full
-	at    []int32          // its place there
-	count int              // check nodes on the shelf
+	rows  [][]int32 // check nodes with as many free sockets as the row's number
+	row   []int32   // row of each check node, 0 if it is not on the shelf
+	at    []int32   // its place there
+	count int       // check nodes on the shelf
+	free  int       // their free sockets
 }
 
 func newShelf(s *sockets) *shelf {
 	m := len(s.checkEnd)
-	h := &shelf{s: s, row: make([]int, m), at: make([]int32, m)}
-	h.level, h.rows = levels(s)
+	most := int32(0)
+	for c := range s.checkEnd {
+		most = max(most, s.free(int32(c)))
+	}
+	h := &shelf{rows: make([][]int32, most+1), row: make([]int32, m), at: make([]int32, m)}
 	for c := range int32(m) {
-		h.row[c] = -1
-		if s.free(c) > 0 {
-			h.insert(c, s.used(c))
-		}
+		h.insert(c, s.free(c))
 	}
 	return h
 }
 
-func (h *shelf) insert(c, used int32) {
-	level := h.level[[2]int32{used, h.s.checkStart[c+1] - h.s.checkStart[c]}]
-	h.row[c], h.at[c] = level, int32(len(h.rows[level]))
-	h.rows[level] = append(h.rows[level], c)
+// insert puts a check node that is not on the shelf in its row, if it has free
+// sockets.
+func (h *shelf) insert(c, free int32) {
+	if free == 0 {
+		return
+	}
+	h.row[c], h.at[c] = free, int32(len(h.rows[free]))
+	h.rows[free] = append(h.rows[free], c)
 	h.count++
+	h.free += int(free)
 }
 
+// remove takes a check node from the shelf, if it is there.
 func (h *shelf) remove(c int32) {
-	row := h.rows[h.row[c]]
+	free := h.row[c]
+	if free == 0 {
+		return
+	}
+	row := h.rows[free]
 	last := row[len(row)-1]
 	row[h.at[c]], h.at[last] = last, h.at[c]
-	h.rows[h.row[c]] = row[:len(row)-1]
-	h.row[c] = -1
+	h.rows[free] = row[:len(row)-1]
+	h.row[c] = 0
 	h.count--
+	h.free -= int(free)
 }
 
-// take notes that c is about to use one more socket.
-func (h *shelf) take(c int32) {
+// take notes that c is about to use one more socket, put that it has one less
+// in use.
+func (h *shelf) take(c int32) { h.change(c, -1) }
+func (h *shelf) put(c int32)  { h.change(c, 1) }
+
+func (h *shelf) change(c, by int32) {
+	free := h.row[c] + by
 	h.remove(c)
-	if used := h.s.used(c) + 1; h.s.free(c) > 1 {
-		h.insert(c, used)
-	}
-}
-
-// put notes that c has freed a socket.
-func (h *shelf) put(c int32) {
-	if h.row[c] >= 0 {
-		h.remove(c)
-	}
-	h.insert(c, h.s.used(c))
+	h.insert(c, free)
 }
 
 // any returns a check node with a free socket; there must be one.
@@ -68,34 +72,14 @@ func (h *shelf) any() int32 {
 	panic("tanner: more sockets of variable nodes than of check nodes")
 }
 
-// levels numbers the possible fractions of sockets in use, in increasing
-// order, for all check degrees that occur; equal fractions share a number.
-// The key is the number of sockets in use and the degree.
-func levels(s *sockets) (number map[[2]int32]int, rows [][]int32) {
-	number = map[[2]int32]int{}
-	var fractions [][2]int32
-	for _, d := range tally(s.checkStart) {
-		for used := range int32(d.Degree) {
-			fractions = append(fractions, [2]int32{used, int32(d.Degree)})
+// draw returns the check node of a random free socket; there must be one.
+func (h *shelf) draw(random *rand.Rand) int32 {
+	n := random.IntN(h.free)
+	for free, row := range h.rows {
+		if n < free*len(row) {
+			return row[n/free]
 		}
+		n -= free * len(row)
 	}
-	slices.SortFunc(fractions, compareFractions)
-	for i, f := range fractions {
-		if i == 0 || compareFractions(fractions[i-1], f) != 0 {
-			rows = append(rows, nil)
-		}
-		number[f] = len(rows) - 1
-	}
-	return number, rows
-}
-
-func compareFractions(a, b [2]int32) int {
-	left, right := int64(a[0])*int64(b[1]), int64(b[0])*int64(a[1])
-	switch {
-	case left < right:
-		return -1
-	case left > right:
-		return 1
-	}
-	return 0
+	panic("tanner: fewer free sockets than counted")
 }

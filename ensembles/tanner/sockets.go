@@ -36,9 +36,6 @@ func (s *sockets) variablesOf(c int32) []int32 { return s.checkVar[s.checkStart[
 // free returns the number of unused sockets of check node c.
 func (s *sockets) free(c int32) int32 { return s.checkStart[c+1] - s.checkEnd[c] }
 
-// used returns the number of sockets of check node c in use.
-func (s *sockets) used(c int32) int32 { return s.checkEnd[c] - s.checkStart[c] }
-
 // join adds an edge; both nodes must have an unused socket.
 func (s *sockets) join(v, c int32) {
 	s.joinAt(v, s.checkEnd[c])

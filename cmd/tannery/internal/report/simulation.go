@@ -16,25 +16,57 @@ const SimulationSchema = "tannery/simulate/1"
 // Simulation is a measured curve: error rates of one matrix at several channel
 // parameters. Further keys of the file are of no concern here.
 type Simulation struct {
-	Schema     string            `json:"schema"`
-	Channel    string            `json:"channel"`
-	Parameter  string            `json:"parameter"` // key of the family's parameter
-	Length     int               `json:"length"`    // code bits
-	DesignRate float64           `json:"design_rate"`
-	Confidence float64           `json:"confidence"` // of the intervals, such as 0.95
-	Points     []SimulationPoint `json:"points"`
+	Schema     string             `json:"schema"`
+	Matrix     string             `json:"matrix"` // digest
+	Title      string             `json:"title"`
+	Channel    string             `json:"channel"`
+	Parameter  string             `json:"parameter"` // key of the family's parameter
+	Length     int                `json:"length"`    // code bits
+	DesignRate float64            `json:"design_rate"`
+	Decoder    string             `json:"decoder"`
+	Iterations int                `json:"max_iterations"` // 0: no limit
+	Seed       uint64             `json:"seed"`
+	Confidence float64            `json:"confidence"` // of the intervals, such as 0.95
+	Limits     []SimulationLimit  `json:"limits"`
+	Scaling    *SimulationScaling `json:"scaling"`
+	Points     []SimulationPoint  `json:"points"`
+	Warnings   []string           `json:"warnings"`
 
 	Name   string `json:"-"` // of the file
 	Symbol string `json:"-"`
 }
 
+// SimulationLimit is a limit beside the curve: the threshold, the Shannon
+// limit, or that of any code of the length at a frame error rate.
+type SimulationLimit struct {
+	Name       string   `json:"name"`
+	Value      float64  `json:"value"` // of the parameter
+	EbN0DB     *float64 `json:"eb_n0_db"`
+	FrameError *float64 `json:"frame_error_rate"`
+}
+
+// SimulationScaling are the parameters of the finite-length scaling law.
+type SimulationScaling struct {
+	Alpha    float64 `json:"alpha"`
+	Beta     float64 `json:"beta"`
+	Isolated bool    `json:"isolated"` // whether the law holds at that length
+}
+
 // SimulationPoint is what was measured at one parameter.
 type SimulationPoint struct {
-	Value  float64      `json:"value"` // of the parameter
-	EbN0DB *float64     `json:"eb_n0_db"`
-	Frames int          `json:"frames"`
-	Frame  MeasuredRate `json:"frame_error_rate"`
-	Bit    MeasuredRate `json:"bit_error_rate"`
+	Value       float64      `json:"value"` // of the parameter
+	EbN0DB      *float64     `json:"eb_n0_db"`
+	Status      string       `json:"status"` // why it ended
+	Frames      int          `json:"frames"`
+	FrameErrors int          `json:"frame_errors"`
+	Undetected  int          `json:"undetected_errors"`
+	BitErrors   int          `json:"bit_errors"`
+	Iterations  float64      `json:"mean_iterations"`
+	Frame       MeasuredRate `json:"frame_error_rate"`
+	Bit         MeasuredRate `json:"bit_error_rate"`
+	// By the scaling law; null where there is none.
+	PredictedFrame *float64 `json:"predicted_frame_error_rate"`
+	PredictedBit   *float64 `json:"predicted_bit_error_rate"`
 }
 
 // MeasuredRate is a rate with the ends of its confidence interval.
@@ -100,6 +132,15 @@ func (s Simulation) Picture(marks []MarkValue) picture.Picture {
 		for i, m := range []MeasuredRate{q.Frame, q.Bit} {
 			c.Series[i].Points = append(c.Series[i].Points, picture.CurvePoint{X: at(q), Rate: m.Value, Low: m.Low, High: m.High})
 		}
+	}
+	predicted := picture.Curve{Name: "frames by the scaling law"}
+	for _, q := range points {
+		if q.PredictedFrame != nil && *q.PredictedFrame > 0 {
+			predicted.Points = append(predicted.Points, picture.CurvePoint{X: at(q), Rate: *q.PredictedFrame})
+		}
+	}
+	if len(predicted.Points) > 0 {
+		c.Series = append(c.Series, predicted)
 	}
 	for _, m := range marks {
 		if inDB && m.EbN0DB != nil {
