@@ -4,6 +4,7 @@ import (
 	"encoding/json"
 	"errors"
 	"fmt"
+	"math"
 	"slices"
 
 	"tannery/cmd/tannery/internal/report/picture"
@@ -160,6 +161,14 @@ type MarkValue struct {
 	EbN0DB *float64
 }
 
+// What a measured curve may hold: far beyond what can be measured, but what can
+// be drawn.
+const (
+	leastRate        = 1e-18
+	largestParameter = 1e9
+	largestDB        = 1000
+)
+
 // DecodeSimulation reads the JSON answer of the command simulate; name stands
 // for the file in errors.
 func DecodeSimulation(name string, content []byte) (Simulation, error) {
@@ -191,7 +200,14 @@ func DecodeSimulation(name string, content []byte) (Simulation, error) {
 	if len(s.Points) == 0 {
 		refuse("points", "none", "at least one")
 	}
+	best, worst := f.Range()
 	for i, p := range s.Points {
+		if !(p.Value >= best && p.Value <= min(worst, largestParameter)) {
+			refuse(fmt.Sprintf("points[%d].value", i), p.Value, fmt.Sprintf("a parameter of %s, from %v to %v", f.Name(), best, min(worst, largestParameter)))
+		}
+		if p.EbN0DB != nil && !(math.Abs(*p.EbN0DB) <= largestDB) {
+			refuse(fmt.Sprintf("points[%d].eb_n0_db", i), *p.EbN0DB, fmt.Sprintf("a number from -%d to %d", largestDB, largestDB))
+		}
 		if p.Frames < 1 {
 			refuse(fmt.Sprintf("points[%d].frames", i), p.Frames, "a whole number of at least 1")
 		}
@@ -200,8 +216,9 @@ func DecodeSimulation(name string, content []byte) (Simulation, error) {
 			m   MeasuredRate
 		}{{"frame_error_rate", p.Frame}, {"bit_error_rate", p.Bit}} {
 			key, m := r.key, r.m
-			if !(0 <= m.Low && m.Low <= m.Value && m.Value <= m.High && m.High <= 1) {
-				refuse(fmt.Sprintf("points[%d].%s", i, key), fmt.Sprintf("%v in %v to %v", m.Value, m.Low, m.High), "a rate from 0 to 1 within its interval")
+			measurable := func(rate float64) bool { return rate == 0 || rate >= leastRate }
+			if !(0 <= m.Low && m.Low <= m.Value && m.Value <= m.High && m.High <= 1 && measurable(m.Value) && measurable(m.High)) {
+				refuse(fmt.Sprintf("points[%d].%s", i, key), fmt.Sprintf("%v in %v to %v", m.Value, m.Low, m.High), "a rate within its interval, 0 or from 1e-18 to 1")
 			}
 		}
 	}
