@@ -22,7 +22,7 @@ type buildOptions struct {
 	construction nameOption
 	girth        integerOption
 	seed         seedOption
-	chain        bool
+	degreeTwo    nameOption
 	output       string
 }
 
@@ -31,6 +31,7 @@ func newBuild() *cobra.Command {
 		length:       integerOption{low: 2, high: ensembles.MaxLength},
 		construction: nameOption{names: []string{string(tanner.Growth), string(tanner.Randomized)}},
 		girth:        integerOption{low: 4, high: 12},
+		degreeTwo:    nameOption{names: []string{string(tanner.Forest), string(tanner.Chain), string(tanner.Free)}, value: string(tanner.Forest)},
 	}
 	cmd := &cobra.Command{
 		Use:   "build PROFILE [options]",
@@ -39,7 +40,8 @@ func newBuild() *cobra.Command {
 tannery export harbour.yaml --length 2048 -o harbour-2048.yaml
 tannery build harbour-2048.yaml -o harbour-2048.mtx
 # in one step, with the degree-2 columns as a dual diagonal for encoding
-tannery build harbour.yaml --length 2048 --chain -o harbour-2048.mtx
+tannery build harbour.yaml --length 2048 --degree-two chain \
+    -o harbour-2048.mtx
 # to another program, without a file
 tannery build --lambda 3:1 --rho 6:1 --length 500 -o - | use-matrix`,
 		Long: `The profile needs its node counts, which export adds to it; with --length they are
@@ -51,6 +53,12 @@ Eleftheriou & Arnold, 2005): each edge goes to the check node that is farthest
 away. Longer ones are joined at random. Either way edges are then exchanged until
 cycles shorter than --girth are gone, as far as that is possible with bounded
 effort; the girth reached is reported. The same seed gives the same matrix.
+
+Cycles of variable nodes of degree 2 alone are codewords of low weight. By default
+these nodes form a forest, without such cycles. --degree-two chain makes them a
+dual diagonal, the last columns, from which parity bits follow one by one. Both
+cost some thousandths of the threshold where such nodes are nearly as many as
+check nodes; free follows the profile to the letter, with an error floor.
 
 The report tells the girth and the number of shortest cycles through a variable
 node, the rank over GF(2) with the true rate, and the gap of an approximate lower
@@ -69,7 +77,8 @@ With -o - it goes to standard output and the report to standard error.`,
 	f.Var(&o.construction, "construction", "growth or randomized; by the length if not given")
 	complete(cmd, "construction", o.construction.names)
 	f.Var(&o.girth, "girth", "even length of cycle to aim at: shorter ones are removed where possible; "+strconv.Itoa(tanner.DefaultGirth)+" if not given")
-	f.BoolVar(&o.chain, "chain", false, "lay the variable nodes of degree 2 as a chain through the check nodes (dual diagonal), as the last columns")
+	f.Var(&o.degreeTwo, "degree-two", "variable nodes of degree 2 as a forest, as a chain (dual diagonal), or free; forest if not given")
+	complete(cmd, "degree-two", o.degreeTwo.names)
 	f.Var(&o.seed, "seed", "seed of the construction: the same seed gives the same matrix")
 	f.StringVarP(&o.output, "output", "o", "", "`FILE` for the matrix, or - for standard output")
 	o.graphOptions.add(cmd)
@@ -106,10 +115,10 @@ func runBuild(cmd *cobra.Command, args []string, o *buildOptions) error {
 		method = tanner.MethodFor(p.Realization.Length)
 	}
 	g, err := tanner.Build(cmd.Context(), *p.Realization, tanner.Settings{
-		Method: method,
-		Seed:   o.seed.value,
-		Chain:  o.chain,
-		Girth:  o.girth.value,
+		Method:    method,
+		Seed:      o.seed.value,
+		DegreeTwo: tanner.DegreeTwo(o.degreeTwo.value),
+		Girth:     o.girth.value,
 		Progress: func(done, total int) {
 			shown.update("placing edges", float64(done)/float64(total), "", 0)
 		},
@@ -128,7 +137,7 @@ func runBuild(cmd *cobra.Command, args []string, o *buildOptions) error {
 		File:          o.output,
 		Construction:  string(method),
 		Seed:          o.seed.value,
-		Chain:         o.chain,
+		DegreeTwo:     o.degreeTwo.value,
 		Profile:       p,
 		ProfileDigest: digest,
 		Warnings:      append([]string{}, warnings...),

@@ -37,7 +37,7 @@ func TestExportBuildProfile(t *testing.T) {
 	}
 	t.Chdir(t.TempDir())
 	for _, c := range []struct{ profile, length, more string }{
-		{filepath.Join(testdata, "profiles/harbour.yaml"), "2048", "--chain"},
+		{filepath.Join(testdata, "profiles/harbour.yaml"), "2048", "--degree-two chain"},
 		{filepath.Join(testdata, "profiles/buoys.yaml"), "1000", "--construction randomized"},
 		{"en302307-r50-d8", "4000", "--seed 5"},
 		{"ru01-r50-d3", "501", ""},

@@ -25,6 +25,7 @@ var phases = regexp.MustCompile(`(?m)^  time went to .*\n( {26}.*\n)*`)
 // returns what the screen shows.
 func typed(t *testing.T, line string) string {
 	t.Helper()
+	line, target, redirected := strings.Cut(line, " > ")
 	words, err := split(line)
 	if err != nil {
 		t.Fatalf("%s: %v", line, err)
@@ -37,10 +38,16 @@ func typed(t *testing.T, line string) string {
 		}
 		return string(content)
 	case "tannery":
-		if len(words) > 1 && words[1] == "search" {
+		if len(words) > 1 && (words[1] == "search" || words[1] == "simulate" || words[1] == "build") {
 			words = append(words, "--no-progress") // at a terminal a bar, which disappears
 		}
 		code, stdout, stderr := command(t, "", words[1:]...)
+		if redirected {
+			if err := os.WriteFile(target, []byte(stdout), 0o600); err != nil {
+				t.Fatal(err)
+			}
+			stdout = ""
+		}
 		screen := stdout + stderr
 		if code != exitDone {
 			screen += "exit code " + string(rune('0'+code)) + "\n"

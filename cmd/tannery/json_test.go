@@ -39,7 +39,7 @@ func TestJSONKeys(t *testing.T) {
 		{"catalog --rate 0.5", "tannery/catalog/1", "schema entries"},
 		{"catalog rsu01-r50-d4", "tannery/catalog-entry/1", "schema name source trust design_rate published profile.lambda"},
 		{"export --lambda 3:1 --rho 6:1 --channel bec --length 100", "tannery/export/1", "schema profile profile.kind profile.realization profile.realization.variable_nodes warnings"},
-		{"build --lambda 3:1 --rho 6:1 --length 100 -o " + os.DevNull, "tannery/build/1", "schema file construction seed chain profile profile.realization profile_digest graph.girth graph.shortest_cycles graph.rank graph.rate graph.encoding_gap graph.digest warnings"},
+		{"build --lambda 3:1 --rho 6:1 --length 100 -o " + os.DevNull, "tannery/build/1", "schema file construction seed degree_two profile profile.realization profile_digest graph.girth graph.shortest_cycles graph.rank graph.rate graph.encoding_gap graph.digest warnings"},
 		{"simulate ../../testdata/matrices/buoys.mtx --channel bec --parameter 0.44 --frames 9", "tannery/simulate/1", "schema matrix title channel parameter length design_rate decoder max_iterations seed confidence limits scaling points warnings"},
 		{"profile ../../testdata/matrices/buoys.mtx", "tannery/profile/1", "schema profile profile.realization.variable_nodes graph.girth graph.rank graph.rate warnings"},
 	} {

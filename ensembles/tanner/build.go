@@ -36,6 +36,25 @@ const PracticalGrowth = 100_000
 // otherwise.
 const DefaultGirth = 10
 
+// DegreeTwo is a way to join the variable nodes of degree 2. Cycles of them
+// alone are codewords, and near the stability bound a random graph has enough
+// of them for a floor of the frame error rate just below the threshold.
+type DegreeTwo string
+
+// The ways. With Forest they form no cycle among themselves, or as few as
+// their number allows. Where they are nearly as many as the check nodes, that
+// leaves no check node without one, which the ensemble of the profile has, and
+// costs some thousandths of the threshold. Chain lays them as a chain through
+// the check nodes, the k-th of them joining rows k and k+1 of the matrix (dual
+// diagonal), as the last columns, and ends it with one variable node of degree
+// 1 if there is any; it needs at least one more check node than there are
+// variable nodes of degree 2, and costs more. Free joins them like others.
+const (
+	Forest DegreeTwo = "forest"
+	Chain  DegreeTwo = "chain"
+	Free   DegreeTwo = "free"
+)
+
 // Settings say how Build constructs a graph. The zero value is valid.
 type Settings struct {
 	// Method is Growth or Randomized; empty means Growth up to a length of
@@ -43,12 +62,9 @@ type Settings struct {
 	Method Method
 	// Seed chooses among the graphs: the same seed gives the same graph.
 	Seed uint64
-	// Chain lays the variable nodes of degree 2 as a chain through the check
-	// nodes, the k-th of them joining rows k and k+1 of the matrix (dual
-	// diagonal), and ends it with one variable node of degree 1 if there is
-	// any. They are then the last columns. It needs at least one more check
-	// node than there are variable nodes of degree 2.
-	Chain bool
+	// DegreeTwo is how the variable nodes of degree 2 are joined; empty means
+	// Forest.
+	DegreeTwo DegreeTwo
 	// Girth is the girth aimed at by edge swaps after the construction, an
 	// even number from 4 to 12: cycles shorter than that are removed where
 	// possible with bounded effort. 4 leaves all cycles in place, so that
@@ -61,9 +77,7 @@ type Settings struct {
 }
 
 // Build constructs a graph with exactly the node counts of r and no repeated
-// edges. The columns are in decreasing order of degree. Where the variable
-// nodes of degree 2 are fewer than the check nodes they form no cycle among
-// themselves, unless the graph is so small and dense that there is no room. It returns an error
+// edges. The columns are in decreasing order of degree. It returns an error
 // if the counts are inconsistent or no such graph exists, if a chain is
 // impossible, if settings are out of range, and ctx.Err() when ctx ends.
 func Build(ctx context.Context, r ensembles.Realization, s Settings) (*Graph, error) {
@@ -79,6 +93,12 @@ func Build(ctx context.Context, r ensembles.Realization, s Settings) (*Graph, er
 	if s.Girth < 4 || s.Girth > 12 || s.Girth%2 != 0 {
 		return nil, fmt.Errorf("girth %d: must be an even number from 4 to 12", s.Girth)
 	}
+	if s.DegreeTwo == "" {
+		s.DegreeTwo = Forest
+	}
+	if s.DegreeTwo != Forest && s.DegreeTwo != Chain && s.DegreeTwo != Free {
+		return nil, fmt.Errorf("degree two %q: must be %q, %q or %q", s.DegreeTwo, Forest, Chain, Free)
+	}
 	if s.Method == "" {
 		s.Method = MethodFor(r.Length)
 	}
@@ -86,23 +106,23 @@ func Build(ctx context.Context, r ensembles.Realization, s Settings) (*Graph, er
 		s.Progress = func(int, int) {}
 	}
 	random := rand.New(rand.NewPCG(s.Seed, uint64(r.Length)))
-	plan, err := layOut(r, s.Chain, random)
+	plan, err := layOut(r, s.DegreeTwo == Chain, random)
 	if err != nil {
 		return nil, err
 	}
 	switch s.Method {
 	case Growth:
 		if err = plan.grow(ctx, random, s.Progress); err == nil {
-			// What has grown without a cycle is to stay so.
-			if first, acyclic := plan.degreeTwo(); acyclic {
+			// What has grown without a cycle, but for one, is to stay so.
+			if first, nodes := plan.degreeTwo(); s.DegreeTwo == Forest && nodes <= r.Checks {
 				plan.frozen = first
 			}
 		}
 	case Randomized:
-		planted := plan.plant(random)
+		planted := s.DegreeTwo == Forest && plan.plant(random)
 		if err = plan.scatter(ctx, random); err != nil && planted && ctx.Err() == nil {
 			// The rest of a small dense graph may not fit around it.
-			if plan, err = layOut(r, s.Chain, random); err == nil {
+			if plan, err = layOut(r, s.DegreeTwo == Chain, random); err == nil {
 				err = plan.scatter(ctx, random)
 			}
 		}

@@ -136,7 +136,7 @@ func TestGrowthReachesPublishedGirth(t *testing.T) {
 func TestChainIsDualDiagonal(t *testing.T) {
 	for _, method := range []Method{Growth, Randomized} {
 		r := satellite(600)
-		g, err := Build(context.Background(), r, Settings{Method: method, Seed: 3, Chain: true})
+		g, err := Build(context.Background(), r, Settings{Method: method, Seed: 3, DegreeTwo: Chain})
 		if err != nil {
 			t.Fatal(err)
 		}
@@ -185,9 +185,9 @@ func TestBuildRefuses(t *testing.T) {
 		s    Settings
 		want string
 	}{
-		{cycle, Settings{Chain: true}, "chain: 6 variable nodes of degree 2: must be at most 3"},
-		{full, Settings{Chain: true}, "beside the chain cannot be joined"},
-		{full, Settings{Chain: true, Method: Randomized}, "beside the chain cannot be joined"},
+		{cycle, Settings{DegreeTwo: Chain}, "chain: 6 variable nodes of degree 2: must be at most 3"},
+		{full, Settings{DegreeTwo: Chain}, "beside the chain cannot be joined"},
+		{full, Settings{DegreeTwo: Chain, Method: Randomized}, "beside the chain cannot be joined"},
 		{unbalanced, Settings{}, "edges"},
 		{short, Settings{}, "joining two nodes twice"},
 		{regular(3, 6, 100), Settings{Girth: 7}, "girth 7: must be an even number from 4 to 12"},
@@ -243,16 +243,16 @@ func benchmarkBuild(b *testing.B, r ensembles.Realization, s Settings) {
 }
 
 func BenchmarkGrowth10000(b *testing.B) {
-	benchmarkBuild(b, satellite(10000), Settings{Method: Growth, Chain: true})
+	benchmarkBuild(b, satellite(10000), Settings{Method: Growth, DegreeTwo: Chain})
 }
 
 func BenchmarkGrowth64800(b *testing.B) {
-	benchmarkBuild(b, satellite(64800), Settings{Method: Growth, Chain: true})
+	benchmarkBuild(b, satellite(64800), Settings{Method: Growth, DegreeTwo: Chain})
 }
 
 func BenchmarkRandomized1000000(b *testing.B) {
 	b.ReportAllocs()
-	benchmarkBuild(b, satellite(1_000_000), Settings{Method: Randomized, Chain: true})
+	benchmarkBuild(b, satellite(1_000_000), Settings{Method: Randomized, DegreeTwo: Chain})
 }
 
 // Variable nodes of degree 2 form no cycle among themselves: with the check
@@ -260,8 +260,8 @@ func BenchmarkRandomized1000000(b *testing.B) {
 func TestDegreeTwoFormsForest(t *testing.T) {
 	for _, length := range []int{200, 600, 2000} {
 		for _, method := range []Method{Growth, Randomized} {
-			for _, chain := range []bool{false, true} {
-				g, err := Build(context.Background(), satellite(length), Settings{Method: method, Seed: 3, Chain: chain})
+			for _, way := range []DegreeTwo{Forest, Chain} {
+				g, err := Build(context.Background(), satellite(length), Settings{Method: method, Seed: 3, DegreeTwo: way})
 				if err != nil {
 					t.Fatal(err)
 				}
@@ -269,7 +269,7 @@ func TestDegreeTwoFormsForest(t *testing.T) {
 				for v := range g.Variables() {
 					if ends := g.ChecksOf(v); len(ends) == 2 {
 						if forest.root(ends[0]) == forest.root(ends[1]) {
-							t.Errorf("length %d, %s, chain %v: column %d closes a cycle of degree 2", length, method, chain, v)
+							t.Errorf("length %d, %s, %s: column %d closes a cycle of degree 2", length, method, way, v)
 						}
 						forest.unite(ends[0], ends[1])
 					}

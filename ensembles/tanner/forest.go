@@ -4,8 +4,8 @@ import "math/rand/v2"
 
 // A cycle through variable nodes of degree 2 alone is a codeword of as many
 // ones as it has variable nodes, and in ensembles near the stability bound a
-// random graph has short ones: the error floor. Where there are fewer such
-// nodes than check nodes they can be joined without any cycle (Di, Richardson
+// random graph has short ones: the error floor. Up to one less than there are
+// check nodes they can be joined without any cycle (Di, Richardson
 // & Urbanke, Weight distribution of low-density parity-check codes, IEEE Trans.
 // Inf. Theory 52(11), 2006, on the part that they play).
 
@@ -13,26 +13,26 @@ import "math/rand/v2"
 // that fits is looked for.
 const plantTries = 200
 
-// degreeTwo returns the first column of degree 2 or less, and whether those of
-// degree 2 are few enough to be joined without a cycle.
-func (s *sockets) degreeTwo() (first int32, acyclic bool) {
+// degreeTwo returns the first column of degree 2 or less, and how many columns
+// of degree 2 there are from it on.
+func (s *sockets) degreeTwo() (first int32, nodes int) {
 	first = s.frozen
-	nodes := 0
 	for first > 0 && s.varStart[first]-s.varStart[first-1] <= 2 {
 		first--
 		if s.varStart[first+1]-s.varStart[first] == 2 {
 			nodes++
 		}
 	}
-	return first, nodes < len(s.checkEnd)
+	return first, nodes
 }
 
-// plant joins the variable nodes of degree 2 to random sockets so that they
-// form no cycle, and freezes them. It returns false, with nothing joined, if
-// it finds no way.
+// plant joins variable nodes of degree 2 to random sockets so that they form
+// no cycle, all of them or as many as that is possible with, and freezes them.
+// It returns false, with nothing joined, if it finds no way.
 func (s *sockets) plant(random *rand.Rand) bool {
-	first, acyclic := s.degreeTwo()
-	if !acyclic || first == s.frozen {
+	first, nodes := s.degreeTwo()
+	first += int32(max(0, nodes-len(s.checkEnd)+1))
+	if nodes == 0 || first == s.frozen {
 		return false
 	}
 	trees := newTrees(len(s.checkEnd))

@@ -19,7 +19,7 @@ func same(a, b *Graph) bool {
 }
 
 func TestMatrixRoundTrip(t *testing.T) {
-	g, err := Build(context.Background(), satellite(200), Settings{Chain: true})
+	g, err := Build(context.Background(), satellite(200), Settings{DegreeTwo: Chain})
 	if err != nil {
 		t.Fatal(err)
 	}

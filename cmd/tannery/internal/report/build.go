@@ -12,7 +12,7 @@ type Build struct {
 	File          string            `json:"file,omitempty"`
 	Construction  string            `json:"construction"`
 	Seed          uint64            `json:"seed"`
-	Chain         bool              `json:"chain"`
+	DegreeTwo     string            `json:"degree_two"`
 	Profile       ensembles.Profile `json:"profile"`
 	ProfileDigest string            `json:"profile_digest"`
 	Graph         Graph             `json:"graph"`
@@ -27,11 +27,7 @@ func (r *Build) WriteText(w io.Writer) error {
 	t.Row("variable nodes", "%s", counts(r.Profile.Realization.VariableNodes))
 	t.Row("check nodes", "%s", counts(r.Profile.Realization.CheckNodes))
 	t.Row("", "exactly the node counts of the profile")
-	chain := ""
-	if r.Chain {
-		chain = ", degree 2 as a chain"
-	}
-	t.Row("construction", "%s%s, seed %d", r.Construction, chain, r.Seed)
+	t.Row("construction", "%s, degree 2 %s, seed %d", r.Construction, r.DegreeTwo, r.Seed)
 	if r.File != "" && r.File != "-" {
 		t.Row("written to", "%s", r.File)
 	}
