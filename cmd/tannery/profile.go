@@ -2,8 +2,10 @@ package main
 
 import (
 	"context"
+	"errors"
 	"fmt"
 	"io"
+	"io/fs"
 	"os"
 
 	"github.com/spf13/cobra"
@@ -105,6 +107,10 @@ func readMatrix(cmd *cobra.Command, path string) (*tanner.Graph, tanner.Label, e
 	case o := <-done:
 		if cmd.Context().Err() != nil {
 			return nil, o.label, context.Cause(cmd.Context())
+		}
+		var pathError *fs.PathError
+		if errors.As(o.err, &pathError) {
+			return nil, o.label, invalid(inputError(name, o.err))
 		}
 		if o.err != nil {
 			return nil, o.label, invalid(o.err)

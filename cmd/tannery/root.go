@@ -19,7 +19,9 @@ decoding threshold lies closest to the Shannon limit under the decoder's limits
 (search), how far any profile is from that limit and why (threshold, trace), how
 it stands beside published ones (compare, catalog), and the same profile as
 exact integer node counts for whoever constructs the parity-check matrix
-(export). One page tells colleagues about it (report).
+(export). It constructs one itself (build), takes in those that exist (profile),
+and measures whether they behave as predicted (simulate). One page tells
+colleagues about it all (report).
 
 Answers go to standard output, everything else to standard error. Exit codes:
 0 done; 1 failed; 2 wrong usage or invalid input; 3 finished, but what was asked

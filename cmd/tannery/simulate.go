@@ -201,6 +201,9 @@ func (o *simulateOptions) values(cmd *cobra.Command, f channel.Family, rate floa
 		if err != nil {
 			return nil, err
 		}
+		if best, worst := f.Range(); f.Name() != (channel.BEC{}).Name() && !(value > best && value < worst) {
+			return nil, usagef("--parameter: found %v; allowed: for trials on channel %s, %v", value, f.Name(), document.Between(best, worst))
+		}
 		values = append(values, value)
 	}
 	return values, nil

@@ -51,7 +51,7 @@ func (m *matrixReader) read() error {
 		return m.ended(err, "it must begin with "+banner)
 	}
 	if !slices.Equal(strings.Fields(strings.ToLower(string(text))), strings.Fields(strings.ToLower(banner))) {
-		return fmt.Errorf("%q: must be %s", shorten(text), banner)
+		return fmt.Errorf("found %q; allowed: %s", shorten(text), banner)
 	}
 	if text, err = m.nextData(); err != nil {
 		return m.ended(err, "the line of rows, columns and entries is missing")
@@ -68,7 +68,7 @@ func (m *matrixReader) read() error {
 		}
 	}
 	if text, err = m.nextData(); err == nil {
-		return fmt.Errorf("%q: more than the %d entries announced", shorten(text), m.entries)
+		return fmt.Errorf("found %q; allowed: nothing after the %d entries announced", shorten(text), m.entries)
 	} else if err != io.EOF {
 		return err
 	}
@@ -79,7 +79,7 @@ func (m *matrixReader) read() error {
 func (m *matrixReader) ended(err error, why string) error {
 	if err == io.EOF {
 		m.line = max(m.line, 1)
-		return errors.New("the file ends here: " + why)
+		return errors.New("found the end of the file: " + why)
 	}
 	return err
 }
@@ -95,7 +95,7 @@ func (m *matrixReader) next() ([]byte, error) {
 	m.line++
 	if err == bufio.ErrBufferFull {
 		if text[0] != '%' || m.line == 1 {
-			return nil, fmt.Errorf("%q: a line of more than %d bytes", shorten(text), maxLine)
+			return nil, fmt.Errorf("found %q and more; allowed: lines of at most %d bytes", shorten(text), maxLine)
 		}
 		text = []byte("%")
 		for err == bufio.ErrBufferFull {
@@ -142,13 +142,13 @@ func (m *matrixReader) readSize(text []byte) error {
 	m.rows, m.columns, m.entries = size[0], size[1], size[2]
 	switch {
 	case m.rows == 0 || m.columns == 0:
-		return fmt.Errorf("%d rows and %d columns: must be at least 1", m.rows, m.columns)
+		return fmt.Errorf("found %d rows and %d columns; allowed: at least 1", m.rows, m.columns)
 	case m.entries > MaxEdges:
-		return fmt.Errorf("%d entries: must be at most %d", m.entries, MaxEdges)
+		return fmt.Errorf("found %d entries; allowed: at most %d", m.entries, MaxEdges)
 	case m.rows > m.entries:
-		return fmt.Errorf("%d rows and %d entries: every row must have an entry", m.rows, m.entries)
+		return fmt.Errorf("found %d rows and %d entries; allowed: an entry in every row", m.rows, m.entries)
 	case m.columns > m.entries:
-		return fmt.Errorf("%d columns and %d entries: every column must have an entry", m.columns, m.entries)
+		return fmt.Errorf("found %d columns and %d entries; allowed: an entry in every column", m.columns, m.entries)
 	}
 	return nil
 }
@@ -159,10 +159,10 @@ func (m *matrixReader) readEntry(text []byte) error {
 		return err
 	}
 	if at[0] < 1 || at[0] > m.rows {
-		return fmt.Errorf("row %d: must be from 1 to %d", at[0], m.rows)
+		return fmt.Errorf("found row %d; allowed: from 1 to %d", at[0], m.rows)
 	}
 	if at[1] < 1 || at[1] > m.columns {
-		return fmt.Errorf("column %d: must be from 1 to %d", at[1], m.columns)
+		return fmt.Errorf("found column %d; allowed: from 1 to %d", at[1], m.columns)
 	}
 	lines := m.line - len(m.edges)
 	if last := len(m.offsets) - 1; last < 0 || m.offsets[last].lines != lines {
@@ -182,19 +182,19 @@ func parseNumbers(text []byte, list []int, form string) error {
 		n := 0
 		for digits < len(rest) && rest[digits] >= '0' && rest[digits] <= '9' {
 			if n > MaxEdges {
-				return fmt.Errorf("%q: numbers must be at most %d", shorten(text), MaxEdges)
+				return fmt.Errorf("found %q; allowed: numbers of at most %d", shorten(text), MaxEdges)
 			}
 			n = 10*n + int(rest[digits]-'0')
 			digits++
 		}
 		if digits == 0 || digits < len(rest) && rest[digits] != ' ' && rest[digits] != '\t' {
-			return fmt.Errorf("%q: must be %s in whole numbers", shorten(text), form)
+			return fmt.Errorf("found %q; allowed: %s in whole numbers", shorten(text), form)
 		}
 		list[i] = n
 		rest = rest[digits:]
 	}
 	if len(bytes.TrimSpace(rest)) > 0 {
-		return fmt.Errorf("%q: must be %s and nothing else", shorten(text), form)
+		return fmt.Errorf("found %q; allowed: %s and nothing else", shorten(text), form)
 	}
 	return nil
 }
@@ -214,17 +214,17 @@ func (m *matrixReader) assemble() error {
 		first := slices.Index(m.edges, Edge{v, c})
 		second := first + 1 + slices.Index(m.edges[first+1:], Edge{v, c})
 		m.line = m.lineOf(second)
-		return fmt.Errorf("row %d, column %d: repeats the entry of line %d", c+1, v+1, m.lineOf(first))
+		return fmt.Errorf("found row %d, column %d again; allowed: once, in line %d", c+1, v+1, m.lineOf(first))
 	}
 	m.line = 0
 	for c := range g.Checks() {
 		if len(g.VariablesOf(c)) == 0 {
-			return fmt.Errorf("row %d of %d: must have an entry", c+1, m.rows)
+			return fmt.Errorf("found row %d of %d empty; allowed: an entry in every row", c+1, m.rows)
 		}
 	}
 	for v := range g.Variables() {
 		if len(g.ChecksOf(v)) == 0 {
-			return fmt.Errorf("column %d of %d: must have an entry", v+1, m.columns)
+			return fmt.Errorf("found column %d of %d empty; allowed: an entry in every column", v+1, m.columns)
 		}
 	}
 	m.graph = g

@@ -40,11 +40,18 @@ func (r *Trace) TunnelPicture() picture.Picture {
 // ErrorPicture draws the error probabilities against iterations.
 func (r *Trace) ErrorPicture() picture.Picture {
 	e := picture.Errors{Subject: r.subject(), Narrowest: r.narrowestIndex()}
-	for _, p := range r.Points {
+	for i, p := range r.Points {
+		if i > 0 && p.ErrorProbability > 0 && p.ErrorProbability < roundedBelow && p.ErrorProbability >= r.Points[i-1].ErrorProbability {
+			// From the first rise on there is nothing but rounding.
+			break
+		}
 		e.States = append(e.States, picture.ErrorState{Iteration: p.Iteration, Message: p.ErrorProbability, Bit: p.BitErrorProbability})
 	}
 	return e.Picture()
 }
+
+// roundedBelow is the error probability below which a rise is one of rounding.
+const roundedBelow = 1e-8
 
 // DegreePicture draws the degree profile of an ensemble.
 func DegreePicture(name string, e ensembles.Ensemble) picture.Picture {
