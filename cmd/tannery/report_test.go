@@ -44,7 +44,7 @@ func outline(t *testing.T, page string) string {
 		case xml.StartElement:
 			text = ""
 			switch e.Name.Local {
-			case "main", "header", "section", "footer":
+			case "main", "header", "section":
 				line("%s%s", e.Name.Local, attribute(e, "aria-labelledby", " by "))
 				depth++
 			case "figure":
@@ -68,7 +68,7 @@ func outline(t *testing.T, page string) string {
 			}
 		case xml.EndElement:
 			switch e.Name.Local {
-			case "main", "header", "section", "footer":
+			case "main", "header", "section":
 				depth--
 			case "h1", "h2", "h3", "h4":
 				line("%s %s", e.Name.Local, strings.TrimSpace(text))
