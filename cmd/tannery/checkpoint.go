@@ -10,7 +10,6 @@ import (
 	"io"
 	"io/fs"
 	"os"
-	"path/filepath"
 	"sync"
 	"time"
 
@@ -94,7 +93,6 @@ func openState(path string, head checkpointFile) (c *checkpoint, state []byte, e
 		unlockFile(lock)
 		return nil, nil, err
 	}
-	c.sweep()
 	go c.write()
 	return c, state, nil
 }
@@ -164,34 +162,6 @@ func (c *checkpoint) decode(content []byte) ([]byte, error) {
 		return nil, usagef("%s: found no checkpoint, or a damaged one; %s", c.path, allowed)
 	}
 	return found.State, nil
-}
-
-// sweep removes what a crash in the middle of a writing has left. Nobody else
-// is writing, because of the lock.
-func (c *checkpoint) sweep() {
-	folder, name := filepath.Split(c.out.path)
-	entries, err := os.ReadDir(filepath.Clean(folder + "."))
-	if err != nil {
-		return
-	}
-	for _, e := range entries {
-		if left, err := filepath.Match("."+escaped(name)+".????????.tmp", e.Name()); err == nil && left {
-			os.Remove(filepath.Join(folder, e.Name()))
-		}
-	}
-}
-
-// escaped protects a name from filepath.Match.
-func escaped(name string) string {
-	var b bytes.Buffer
-	for _, r := range name {
-		switch r {
-		case '*', '?', '[', '\\':
-			b.WriteByte('\\')
-		}
-		b.WriteRune(r)
-	}
-	return b.String()
 }
 
 // keep takes a state to be written soon. It is optimize.Settings.Checkpoint.

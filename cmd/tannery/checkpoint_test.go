@@ -62,7 +62,7 @@ func TestKilledSearchEndsInTheSameProfile(t *testing.T) {
 	file := filepath.Join(folder, "best.yaml")
 	random := rand.New(rand.NewPCG(4, 2))
 	kills := 0
-	for kills < 5 {
+	for kills < 16 {
 		cmd, stderr := process(t, strings.Fields(resumableSearch+"--workers 1 -o "+file)...)
 		if err := cmd.Start(); err != nil {
 			t.Fatal(err)

@@ -8,6 +8,9 @@ import (
 	"math/rand/v2"
 	"os"
 	"path/filepath"
+	"runtime"
+	"strconv"
+	"strings"
 	"syscall"
 )
 
@@ -61,12 +64,33 @@ func prepareOutput(path string) (*outputFile, error) {
 		}
 		f.Close()
 	}
+	out.sweep()
 	probe, err := out.temporary()
 	if err != nil {
 		return nil, err
 	}
-	probe.Close()
-	return out, os.Remove(probe.Name())
+	unlockFile(probe)
+	return out, nil
+}
+
+// sweep removes what processes have left that were killed while they wrote the
+// same target. Those that live hold locks.
+func (o *outputFile) sweep() {
+	folder, name := filepath.Split(o.path)
+	entries, err := os.ReadDir(filepath.Clean(folder + "."))
+	if err != nil {
+		return
+	}
+	for _, e := range entries {
+		middle, isOurs := strings.CutPrefix(e.Name(), "."+name+".")
+		middle, isTemporary := strings.CutSuffix(middle, ".tmp")
+		if _, err := strconv.ParseUint(middle, 16, 32); err != nil || !isOurs || !isTemporary || len(middle) != 8 {
+			continue
+		}
+		if left, ok, err := lockFile(filepath.Join(folder, e.Name())); err == nil && ok {
+			unlockFile(left)
+		}
+	}
 }
 
 // write stores the content under the target's name.
@@ -104,25 +128,28 @@ func (o *outputFile) store(write func(io.Writer) error) error {
 	if err == nil {
 		err = f.Sync()
 	}
-	err = errors.Join(err, f.Close())
+	if runtime.GOOS == "windows" {
+		f.Close() // an open file cannot be renamed there
+	}
 	if err == nil {
+		// Still under its lock, so that nobody takes it for a leftover.
 		err = os.Rename(f.Name(), o.path)
 	}
 	if err != nil {
-		os.Remove(f.Name())
+		unlockFile(f)
 		return err
 	}
+	f.Close()
 	return syncFolder(filepath.Dir(o.path))
 }
 
-// temporary creates a new file beside the target. Unlike os.CreateTemp it
-// leaves the permissions to the user's umask.
+// temporary creates a new file beside the target and locks it. Unlike
+// os.CreateTemp it leaves the permissions to the user's umask.
 func (o *outputFile) temporary() (*os.File, error) {
 	folder, name := filepath.Split(o.path)
 	for {
-		path := filepath.Join(folder, fmt.Sprintf(".%s.%08x.tmp", name, rand.Uint32()))
-		f, err := os.OpenFile(path, os.O_WRONLY|os.O_CREATE|os.O_EXCL, o.mode)
-		if !errors.Is(err, fs.ErrExist) {
+		f, ok, err := lockFile(filepath.Join(folder, fmt.Sprintf(".%s.%08x.tmp", name, rand.Uint32())))
+		if ok || err != nil {
 			return f, err
 		}
 	}

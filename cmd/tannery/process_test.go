@@ -21,6 +21,9 @@ func TestMain(m *testing.M) {
 	switch os.Getenv(asTannery) {
 	case "1":
 		main()
+	case "cramped":
+		limitFileSize()
+		main()
 	case "stubborn":
 		ctx, _ := withSignals(context.Background())
 		os.Stdout.WriteString("ready\n")

@@ -57,8 +57,8 @@ func TestKilledSimulationEndsInTheSameCounts(t *testing.T) {
 		}
 		done := make(chan error, 1)
 		go func() { done <- cmd.Wait() }()
-		pause := time.Duration(100+random.IntN(1500)) * time.Millisecond
-		if kills >= 8 {
+		pause := time.Duration(100+random.IntN(700)) * time.Millisecond
+		if kills >= 12 {
 			pause = time.Hour
 		}
 		select {

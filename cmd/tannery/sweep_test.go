@@ -79,7 +79,7 @@ func TestKilledSweepEndsInTheSameTable(t *testing.T) {
 	state, profiles := filepath.Join(folder, "state"), filepath.Join(folder, "profiles")
 	args := killedSweep + " --checkpoint " + state + " --profiles " + profiles
 	random := rand.New(rand.NewPCG(7, 7))
-	for range 4 {
+	for range 10 {
 		cmd, _ := process(t, strings.Fields(args)...)
 		if err := cmd.Start(); err != nil {
 			t.Fatal(err)
