@@ -20,14 +20,14 @@ func readInput(ctx context.Context, path string, stdin io.Reader) (content []byt
 	if path == "" {
 		return nil, "", usagef("file name \"\": must be a file, or - for standard input")
 	}
-	name, source := "standard input", stdin
+	name, source := inputName(path), stdin
 	if path != "-" {
 		f, err := os.Open(path)
 		if err != nil {
 			return nil, path, invalid(inputError(path, err))
 		}
 		defer f.Close()
-		name, source = path, f
+		source = f
 	}
 	content, err = readAll(ctx, source)
 	if ctx.Err() != nil {
@@ -40,6 +40,14 @@ func readInput(ctx context.Context, path string, stdin io.Reader) (content []byt
 		return nil, name, usagef("%s: larger than %d bytes, the most that is read", name, maxInput)
 	}
 	return content, name, nil
+}
+
+// inputName is how errors call an input.
+func inputName(path string) string {
+	if path == "-" {
+		return "standard input"
+	}
+	return path
 }
 
 // readAll reads up to one byte more than maxInput, or until ctx ends: a

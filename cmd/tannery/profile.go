@@ -73,7 +73,7 @@ func runProfile(cmd *cobra.Command, path string, o *matrixProfileOptions) error 
 func profileOf(g *tanner.Graph, label tanner.Label, path string) (ensembles.Profile, error) {
 	r, err := g.Realization()
 	if err != nil {
-		return ensembles.Profile{}, usagef("%s: %w", path, err)
+		return ensembles.Profile{}, usagef("%s: %w", inputName(path), err)
 	}
 	p := ensembles.Profile{Title: label.Title, Ensemble: r.Ensemble(), Realization: &r}
 	p.Provenance.Program, p.Provenance.Created = program, now()
@@ -83,14 +83,14 @@ func profileOf(g *tanner.Graph, label tanner.Label, path string) (ensembles.Prof
 // readMatrix reads a parity-check matrix from a file, or from standard input
 // for "-". It may be far larger than other inputs.
 func readMatrix(cmd *cobra.Command, path string) (*tanner.Graph, tanner.Label, error) {
-	name, source := "standard input", cmd.InOrStdin()
+	name, source := inputName(path), cmd.InOrStdin()
 	if path != "-" {
 		f, err := os.Open(path)
 		if err != nil {
 			return nil, tanner.Label{}, invalid(inputError(path, err))
 		}
 		defer f.Close()
-		name, source = path, f
+		source = f
 	}
 	type outcome struct {
 		graph *tanner.Graph

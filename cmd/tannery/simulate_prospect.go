@@ -17,7 +17,7 @@ import (
 func (o *simulateOptions) prospect(cmd *cobra.Command, path string, g *tanner.Graph, label tanner.Label, f channel.Family) (*report.Simulation, *montecarlo.Scaling, error) {
 	r, err := g.Realization()
 	if err != nil {
-		return nil, nil, usagef("%s: %w", path, err)
+		return nil, nil, usagef("%s: %w", inputName(path), err)
 	}
 	e := r.Ensemble()
 	answer := &report.Simulation{
