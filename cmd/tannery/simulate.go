@@ -113,6 +113,9 @@ counts. It is removed at the end.`,
 	f.BoolVar(&o.csv, "csv", false, "answer with CSV, one line per parameter")
 	f.BoolVar(&o.noProgress, "no-progress", false, "no progress on standard error")
 	o.addPicture(cmd, "curves")
+	if err := f.MarkHidden("picture"); err != nil { // there is one only
+		panic(err) // an option that does not exist
+	}
 	return cmd
 }
 
