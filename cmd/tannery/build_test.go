@@ -11,17 +11,20 @@ import (
 	"tannery/ensembles"
 )
 
+// profileIn reads a profile file.
+func profileIn(t *testing.T, path string) ensembles.Profile {
+	t.Helper()
+	p, _, err := ensembles.DecodeProfile(path, content(t, path))
+	if err != nil {
+		t.Fatal(err)
+	}
+	return p
+}
+
 // countsIn reads the realization of a profile file.
 func countsIn(t *testing.T, path string) ensembles.Realization {
 	t.Helper()
-	content, err := os.ReadFile(path)
-	if err != nil {
-		t.Fatal(err)
-	}
-	p, _, err := ensembles.DecodeProfile(path, content)
-	if err != nil {
-		t.Fatal(err)
-	}
+	p := profileIn(t, path)
 	if p.Realization == nil {
 		t.Fatalf("%s: no realization", path)
 	}

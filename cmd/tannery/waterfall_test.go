@@ -3,7 +3,6 @@ package main
 import (
 	"context"
 	"math"
-	"os"
 	"path/filepath"
 	"testing"
 
@@ -26,15 +25,7 @@ func waterfallDB(length int) float64 { return .0355 * math.Sqrt(1e7/float64(leng
 // realized returns the counts of a profile of testdata at a length.
 func realized(t *testing.T, name string, length int) ensembles.Realization {
 	t.Helper()
-	path := filepath.Join("../../testdata/profiles", name+".yaml")
-	content, err := os.ReadFile(path)
-	if err != nil {
-		t.Fatal(err)
-	}
-	p, _, err := ensembles.DecodeProfile(path, content)
-	if err != nil {
-		t.Fatal(err)
-	}
+	p := profileIn(t, filepath.Join("../../testdata/profiles", name+".yaml"))
 	meters, _ := resultMeters(p)
 	r, err := ensembles.Realize(p.Ensemble, length, score(context.Background(), meters))
 	if err != nil {
@@ -60,11 +51,7 @@ func TestRecordedWaterfalls(t *testing.T) {
 		{"biawgn-r50-d15", channel.BIAWGN{}, de.QuantizedEngine{}},
 	} {
 		file := filepath.Join("../../testdata/simulations", c.profile+"-200000.json")
-		content, err := os.ReadFile(file)
-		if err != nil {
-			t.Fatal(err)
-		}
-		s, err := report.DecodeSimulation(file, content)
+		s, err := report.DecodeSimulation(file, content(t, file))
 		if err != nil {
 			t.Fatal(err)
 		}

@@ -1,0 +1,108 @@
+package main
+
+import (
+	"encoding/json"
+	"fmt"
+
+	"github.com/spf13/cobra"
+
+	"tannery/cmd/tannery/internal/report"
+	"tannery/de/channel"
+	"tannery/de/montecarlo"
+	"tannery/ensembles/tanner"
+)
+
+// measure makes the trials at all values, and adds a point to the answer for
+// each at which there were any. It tells whether it was interrupted.
+func (o *simulateOptions) measure(cmd *cobra.Command, g *tanner.Graph, f channel.Family, values []float64, answer *report.Simulation, scaling *montecarlo.Scaling) (interrupted bool, err error) {
+	kept, done, err := o.resume(cmd, answer.Matrix, values)
+	if err != nil {
+		return false, err
+	}
+	complete := false
+	defer func() {
+		if failed := kept.close(complete); failed != nil {
+			warn(cmd, []string{failed.Error()})
+		}
+	}()
+	shown := newProgress(cmd.ErrOrStderr(), o.noProgress || quiet(cmd), 0)
+	defer shown.finish()
+	limits := montecarlo.Limits{
+		Frames: int64(o.frames.value), FrameErrors: int64(o.frameErrors.value), Time: o.time.value, Workers: o.workers.value,
+	}
+	for i, value := range values {
+		trials := montecarlo.Trials{
+			Graph: g, Family: f, Parameter: value, Iterations: o.iterations.value, Schedule: montecarlo.Schedule(o.schedule.value), Seed: o.seed.value,
+		}
+		m, status, err := trials.Run(cmd.Context(), done[i], limits, func(m montecarlo.Measurement) {
+			done[i] = m
+			if kept != nil {
+				state, _ := json.Marshal(done) // of numbers, which cannot fail
+				kept.keep(state)
+			}
+			share := max(float64(m.Counts.Frames)/float64(limits.Frames), float64(m.Counts.FrameErrors)/float64(limits.FrameErrors))
+			shown.update(fmt.Sprintf("%d of %d, %s %.6g", i+1, len(values), f.Symbol(), value), (float64(i)+share)/float64(len(values)),
+				fmt.Sprintf("%d of %d frames wrong", m.Counts.FrameErrors, m.Counts.Frames), 0)
+		})
+		if err != nil {
+			return false, usagef("%s: %w", o.checkpoint, err)
+		}
+		if m.Counts.Frames > 0 {
+			answer.Points = append(answer.Points, o.point(m, status, f, answer, scaling))
+		}
+		if status == montecarlo.Interrupted {
+			return true, nil
+		}
+	}
+	complete = true
+	return false, nil
+}
+
+// resume opens the checkpoint, if there is one, and returns what is measured
+// at each value.
+func (o *simulateOptions) resume(cmd *cobra.Command, matrix string, values []float64) (*checkpoint, []montecarlo.Measurement, error) {
+	done := make([]montecarlo.Measurement, len(values))
+	if !cmd.Flags().Changed("checkpoint") {
+		return nil, done, nil
+	}
+	asked, err := json.Marshal(map[string]any{
+		"command": "simulate", "matrix": matrix, "channel": o.channel.value, "values": values,
+		"iterations": o.iterations.value, "schedule": o.schedule.value, "seed": o.seed.value,
+	})
+	if err != nil {
+		return nil, nil, err
+	}
+	kept, state, err := openState(o.checkpoint, checkpointFile{Kind: "measurement", Version: checkpointVersion, Program: program, Brief: asked})
+	if err != nil || state == nil {
+		return kept, done, err
+	}
+	if err := json.Unmarshal(state, &done); err != nil || len(done) != len(values) {
+		kept.close(false)
+		return nil, nil, usagef("%s: found a damaged checkpoint; allowed: that of this measurement, another --checkpoint, or to remove the file and start anew", o.checkpoint)
+	}
+	if !quiet(cmd) {
+		fmt.Fprintf(cmd.ErrOrStderr(), "tannery: continuing from %s\n", o.checkpoint)
+	}
+	return kept, done, nil
+}
+
+// point is what was measured at one parameter.
+func (o *simulateOptions) point(m montecarlo.Measurement, status montecarlo.Status, f channel.Family, answer *report.Simulation, scaling *montecarlo.Scaling) report.SimulationPoint {
+	p := report.SimulationPoint{
+		Value:       m.Parameter,
+		Status:      string(status),
+		Frames:      int(m.Counts.Frames),
+		FrameErrors: int(m.Counts.FrameErrors),
+		Undetected:  int(m.Counts.Undetected),
+		BitErrors:   int(m.Counts.BitErrors),
+		Iterations:  m.MeanIterations(),
+		Frame:       report.MeasuredRate(m.FrameErrorRate(o.confidence.value)),
+		Bit:         report.MeasuredRate(m.BitErrorRate(o.confidence.value)),
+	}
+	p.EbN0DB, _ = ratios(f, m.Parameter, answer.DesignRate)
+	if scaling != nil {
+		frame, bit := scaling.FrameErrorRate(m.Length, m.Parameter), scaling.BitErrorRate(m.Length, m.Parameter)
+		p.PredictedFrame, p.PredictedBit = &frame, &bit
+	}
+	return p
+}
