@@ -4,6 +4,9 @@ import (
 	"context"
 	"math"
 	"math/bits"
+	"runtime"
+	"sync"
+	"sync/atomic"
 )
 
 // Cycles describes the shortest cycles of a graph.
@@ -24,32 +27,57 @@ type Cycles struct {
 // there is one path from v to each node met. If g is the girth, two paths
 // from v to a node at depth g/2 share no other node, since together they
 // would hold a shorter cycle; so k paths to one node make k(k-1)/2 cycles,
-// and each cycle through v has exactly one node opposite. A longer length
-// that was counted first is forgotten when a shorter one turns up. The time
-// is that of visiting the tree of depth g/2 below every variable node.
+// and each cycle through v has exactly one node opposite. What was counted of
+// a longer length is forgotten in the end. The time is that of visiting the
+// tree of depth g/2 below every variable node, on all processors. It returns
+// ctx.Err() when ctx ends.
 func (g *Graph) ShortestCycles(ctx context.Context) (Cycles, error) {
 	core := g.core()
-	f := cycleFinder{g: core}
-	result := Cycles{PerVariable: make([]int64, g.Variables())}
-	for v := range g.Variables() {
-		if v%256 == 0 {
-			if err := ctx.Err(); err != nil {
-				return Cycles{}, err
+	n := g.Variables()
+	result := Cycles{PerVariable: make([]int64, n)}
+	lengths := make([]int32, n) // of the cycles counted, 0 for none
+	var (
+		shortest atomic.Int32 // so far, 0 for none
+		next     atomic.Int64
+		workers  sync.WaitGroup
+	)
+	const share = 256 // variable nodes
+	for range runtime.GOMAXPROCS(0) {
+		workers.Go(func() {
+			f := cycleFinder{g: core}
+			for ctx.Err() == nil {
+				first := int(next.Add(share)) - share
+				if first >= n {
+					return
+				}
+				for v := first; v < min(first+share, n); v++ {
+					if len(core.ChecksOf(v)) == 0 {
+						continue
+					}
+					length, count := f.through(int32(v), int(shortest.Load()))
+					if count == 0 {
+						continue
+					}
+					lengths[v], result.PerVariable[v] = int32(length), count
+					for now := shortest.Load(); now == 0 || int32(length) < now; now = shortest.Load() {
+						if shortest.CompareAndSwap(now, int32(length)) {
+							break
+						}
+					}
+				}
 			}
+		})
+	}
+	workers.Wait()
+	if err := ctx.Err(); err != nil {
+		return Cycles{}, err
+	}
+	result.Girth = int(shortest.Load())
+	for v, length := range lengths {
+		if int(length) != result.Girth {
+			result.PerVariable[v] = 0
 		}
-		if len(core.ChecksOf(v)) == 0 {
-			continue
-		}
-		length, count := f.through(int32(v), result.Girth)
-		if count == 0 {
-			continue
-		}
-		if length < result.Girth || result.Girth == 0 {
-			clear(result.PerVariable[:v])
-			result.Girth, result.Total = length, 0
-		}
-		result.PerVariable[v] = count
-		result.Total += count
+		result.Total += result.PerVariable[v]
 	}
 	if result.Girth > 0 {
 		result.Total /= int64(result.Girth / 2)
