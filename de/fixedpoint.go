@@ -17,13 +17,12 @@ import (
 // off, and what is left settles quickly. (Holding a functional of the density
 // and letting the channel float is how Méasson, Montanari, Richardson &
 // Urbanke trace EBP GEXIT curves: The generalized area theorem and some of its
-// consequences, IEEE Trans. Inf. Theory 55(11), 2009, section VIII; they hold
-// the entropy.)
+// consequences, IEEE Trans. Inf. Theory 55(11), 2009; they hold the entropy.)
 //
 // A channel on which a fixed point exists, and every worse one, fails: an
 // evolution begins with messages worse than the fixed point's, and stays so
-// (degradation is preserved: Richardson & Urbanke, Modern Coding Theory, 2008,
-// section 4.6).
+// (density evolution preserves degradation: Richardson & Urbanke, Modern Coding
+// Theory, 2008, chapter 4).
 type fixedPoints struct {
 	ensemble ensembles.Ensemble
 	family   channel.Family

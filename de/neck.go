@@ -26,9 +26,9 @@ const (
 	narrowSpan = 0.004
 	neckReach  = 1.5
 	// neckError is the relative error of a neck, neckTolerance that of the
-	// fixed points in its parabola, strideError that of those on the way there; strideTries is
-	// how often a stride is shortened that does not settle, and neckTries how
-	// often the parabola is moved.
+	// fixed points in its parabola, strideError that of those on the way
+	// there; strideTries is how often a stride is shortened that does not
+	// settle, and neckTries how often the parabola is moved.
 	neckError     = 1e-9
 	neckTolerance = 1e-10
 	strideError   = 1e-7
