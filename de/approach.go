@@ -12,8 +12,8 @@ import (
 	"tannery/ensembles"
 )
 
-// approach finds the threshold on one grid by runs that come ever closer to
-// it from below.
+// approach finds the threshold on one grid: by runs that come ever closer to
+// it from below, and by the necks of the tunnels that these show.
 type approach struct {
 	e     ensembles.Ensemble
 	f     channel.Family
@@ -26,11 +26,11 @@ type approach struct {
 
 	runs       []course // that succeeded, in order of parameter
 	iterations int
-	tunnel     float64 // where the first tunnel closes, as last predicted
-	estimate   float64 // of the threshold: there, or at the bound
-	error      float64 // of tunnel
-	necks      []neck
-	critical   []closing // places where the tunnel closes, the first one first
+	tunnel     float64   // where the first tunnel closes, predicted or by its neck
+	estimate   float64   // of the threshold: there, or at the bound
+	error      float64   // of tunnel
+	critical   []closing // predictions, the first one first
+	necks      []neck    // found, the first one first
 }
 
 const (
