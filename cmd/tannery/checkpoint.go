@@ -10,6 +10,7 @@ import (
 	"io"
 	"io/fs"
 	"os"
+	"path/filepath"
 	"sync"
 	"time"
 
@@ -78,7 +79,12 @@ func openState(path string, head checkpointFile) (c *checkpoint, state []byte, e
 		return nil, nil, usagef("--checkpoint %q: must be a file name", path)
 	}
 	c = &checkpoint{path: path, head: head, wake: make(chan struct{}, 1), stop: make(chan struct{}), done: make(chan struct{})}
-	lock, ok, err := lockFile(path + ".lock")
+	// Beside the file itself, so that a symbolic link to it is no second way in.
+	named := path
+	if target, err := filepath.EvalSymlinks(path); err == nil {
+		named = target
+	}
+	lock, ok, err := lockFile(named + ".lock")
 	switch {
 	case err != nil:
 		return nil, nil, outputError("--checkpoint", path, err)

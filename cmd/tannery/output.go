@@ -82,6 +82,9 @@ func (o *outputFile) sweep() {
 		return
 	}
 	for _, e := range entries {
+		if !e.Type().IsRegular() {
+			continue // what is behind a link is not ours
+		}
 		middle, isOurs := strings.CutPrefix(e.Name(), "."+name+".")
 		middle, isTemporary := strings.CutSuffix(middle, ".tmp")
 		if _, err := strconv.ParseUint(middle, 16, 32); err != nil || !isOurs || !isTemporary || len(middle) != 8 {

@@ -49,6 +49,7 @@ tannery export link.yaml --length 64800 -o link-64800.yaml`,
 			}
 			return usagef("%s: unknown command%s; tannery --help lists them", args[0], suggestion(args[0], names))
 		},
+		PersistentPreRunE: refuseSameFile,
 		RunE: func(cmd *cobra.Command, _ []string) error {
 			printWelcome(cmd)
 			return nil
@@ -66,13 +67,30 @@ tannery export link.yaml --length 64800 -o link-64800.yaml`,
 	root.Flags().Lookup("version").Usage = "the version"
 	for _, c := range append(root.Commands(), root) {
 		if c.Name() == "completion" {
-			c.Short = "completion of commands, options and names for your shell"
+			dressCompletion(c)
 		}
 		c.DisableFlagsInUseLine = true
 		c.InitDefaultHelpFlag()
 		c.Flags().Lookup("help").Usage = "this text"
 	}
 	return root
+}
+
+// dressCompletion gives the command of the library our manners.
+func dressCompletion(c *cobra.Command) {
+	c.Short = "completion of commands, options and names for your shell"
+	var shells []string
+	for _, shell := range c.Commands() {
+		shells = append(shells, shell.Name())
+		shell.Args = atMost(0, "options only")
+	}
+	c.Args = func(_ *cobra.Command, args []string) error {
+		if len(args) > 0 {
+			return usagef("completion: found %q; allowed: %s%s", args[0], listOf(shells), suggestion(args[0], shells))
+		}
+		return nil
+	}
+	c.RunE = func(c *cobra.Command, _ []string) error { return c.Help() }
 }
 
 // helpOf prints the help of the command named by args.

@@ -5,7 +5,6 @@ import (
 	"context"
 	"errors"
 	"fmt"
-	"path/filepath"
 	"runtime"
 	"time"
 
@@ -153,8 +152,6 @@ func (o *searchOptions) openCheckpoint(cmd *cobra.Command, b brief.Brief, m opti
 	switch {
 	case given && !resumable:
 		return nil, nil, usagef("--checkpoint: found %s; allowed: nothing, because this search ends within seconds; only --method quantized takes longer", path)
-	case given && out.file != nil && filepath.Clean(path) == filepath.Clean(o.output):
-		return nil, nil, usagef("--checkpoint and --output: found the same file, %s; allowed: two", path)
 	case !given && (!resumable || out.file == nil || out.file.direct):
 		return nil, nil, nil
 	case !given:
