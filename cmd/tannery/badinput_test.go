@@ -14,7 +14,7 @@ const profileText = "kind: profile\nversion: 1\nlambda: {2: 0.3, 3: 0.7}\nrho: {
 // that names the place, the value found and what is allowed.
 func TestBadInput(t *testing.T) {
 	const threshold = "threshold - --channel bec"
-	for _, c := range []struct{ name, args, stdin, want string }{
+	refused(t, []badInput{
 		// Profiles as text.
 		{"negative fraction", "threshold --channel bec --lambda 2:-0.3,3:1.3 --rho 6:1", "",
 			"--lambda: fraction -0.3 of degree 2: must be finite and not negative"},
@@ -180,10 +180,111 @@ func TestBadInput(t *testing.T) {
 			`--checkpoint "": must be a file name`},
 		{"no curve", "report ru01-r50-d3 --channel bec --simulation -", "{}",
 			`standard input: schema: found ""; allowed: tannery/simulate/1`},
-	} {
+
+		// Options and arguments of the other commands.
+		{"a shell nobody knows", "completion bahs", "",
+			`completion: found "bahs"; allowed: bash, zsh, fish or powershell; did you mean bash?`},
+		{"two shells", "completion bash zsh", "",
+			`"zsh": unexpected; bash takes options only`},
+		{"neither true nor false", "limit --json=maybe", "",
+			`--json: found "maybe"; allowed: true or false`},
+		{"a command misspelt", "serach", "",
+			"serach: unknown command; did you mean search?; tannery --help lists them"},
+		{"an option misspelt", "search --chanel bec", "",
+			"--chanel: unknown option; did you mean --channel?"},
+		{"an option that is none", "search -x", "",
+			"-x: unknown option"},
+		{"a folder of manual pages that is not there", "man none", "",
+			"none: found no folder; allowed: a folder that exists"},
+		{"no folder for manual pages", "man", "",
+			"folder: missing; allowed: a folder for the manual pages"},
+		{"two names for the catalogue", "catalog a b", "",
+			`"b": unexpected; catalog takes one name`},
+		{"a name that is not in the catalogue", "catalog none", "",
+			"none: not a name of the catalogue; tannery catalog lists them"},
+		{"a channel the catalogue does not know", "catalog --channel fax", "",
+			`--channel: found "fax"; allowed: bec, bsc, biawgn, laplace or rayleigh`},
+		{"CSV and JSON", "trace ru01-r50-d3 --channel bec --parameter 0.4 --csv --json", "",
+			"--csv and --json: only one of the two"},
+		{"a picture of another kind", "trace ru01-r50-d3 --channel bec --parameter 0.4 --plot x.gif", "",
+			`--plot: found "x.gif"; allowed: a file name that ends in .svg or .png`},
+		{"a picture without a file", "trace ru01-r50-d3 --channel bec --parameter 0.4 --picture errors", "",
+			"--picture: needs --plot beside it"},
+		{"an unknown picture", "trace ru01-r50-d3 --channel bec --parameter 0.4 --plot x.svg --picture map", "",
+			`--picture: found "map"; allowed: tunnel, errors or degrees`},
+		{"a trace at no parameter", "trace ru01-r50-d3 --channel bec", "",
+			"--parameter: missing; allowed: it, --eb-n0 or --es-n0"},
+		{"a trace beyond the channel", "trace ru01-r50-d3 --channel bec --parameter 2", "",
+			"--parameter: found 2; allowed: for ε of channel bec, a number from 0 to 1"},
+		{"a trace of no iterations", "trace ru01-r50-d3 --channel bec --parameter 0.4 --iterations 0", "",
+			`--iterations: found "0"; allowed: a whole number from 1 to 1000000`},
+		{"a target without iterations", "threshold ru01-r50-d3 --channel bec --target-error 1e-3", "",
+			"--target-error: needs --iterations beside it"},
+		{"two profiles for one", "threshold ru01-r50-d3 ru01-r50-d4 --channel bec", "",
+			`"ru01-r50-d4": unexpected; threshold takes one profile`},
+		{"a distribution without fractions", "threshold --lambda 3 --rho 6:1 --channel bec", "",
+			`--lambda: "3": must be DEGREE:FRACTION, as in 2:0.3,3:0.7`},
+		{"a degree beyond the cap", "threshold --lambda 1000001:1 --rho 6:1 --channel bec", "",
+			`--lambda: degree "1000001": must be a whole number from 1 to 1000000`},
+		{"degradation of a channel with a name", "limit --channel bec --degradation flip --rate 0.5", "",
+			"--degradation: found flip; allowed: nothing, because channel bec is not from a file"},
+		{"a length without an error rate", "limit --channel bec --rate 0.5 --length 100", "",
+			"--frame-error: missing; --length needs two of --frame-error, --rate and --parameter"},
+		{"an error rate without a length", "limit --channel bec --rate 0.5 --frame-error 1e-3", "",
+			"--frame-error: needs --length beside it"},
+		{"decibels beyond measure", "limit --channel biawgn --es-n0 1e9", "",
+			`--es-n0: found "1e9"; allowed: a number from -100 to 100`},
+		{"noise of 0", "limit --channel biawgn --parameter 0", "",
+			"--parameter: found 0; allowed: for σ of channel biawgn, a number above 0"},
+		{"a source without a rate", "limit --channel bec --parameter 0.4 --source-probability 0.2", "",
+			"a link needs both --source-rate and --symbol-rate"},
+		{"an argument where none is", "limit bec", "",
+			`"bec": unexpected; limit takes options only`},
+		{"nothing to compare", "compare", "",
+			"profile: missing; allowed: one or more files, names of the catalogue, and - for standard input once"},
+		{"standard input twice", "compare - - --channel bec", "kind: profile\nversion: 1\nlambda: {3: 1}\nrho: {6: 1}\n",
+			"-: standard input can be read once only"},
+		{"an order nobody knows", "compare ru01-r50-d3 --channel bec --sort size", "",
+			`--sort: found "size"; allowed: gap, threshold, edges, iterations, name or none`},
+		{"a distance of all", "compare ru01-r50-d3 --channel bec --distance 1", "",
+			`--distance: found "1"; allowed: a number above 0 and below 1`},
+		{"an export of no length", "export ru01-r50-d3", "",
+			"--length: missing; allowed: a whole number from 2 to 1000000000"},
+		{"an export too long", "export ru01-r50-d3 --length 1000000001", "",
+			`--length: found "1000000001"; allowed: a whole number from 2 to 1000000000`},
+		{"a report on no channel", "report ru01-r50-d3", "",
+			"--channel: missing, and the profile's results do not name exactly one; allowed: bec, bsc, biawgn, laplace, rayleigh, or a file with . or / in its name"},
+		{"fewer than no neighbours", "report ru01-r50-d3 --channel bec --neighbours -1", "",
+			`--neighbours: found "-1"; allowed: a whole number from 0 to 100`},
+		{"a time too long", "search --channel bec --rate 0.5 --time 721h", "",
+			`--time: found "721h"; allowed: a time above 0 and up to 720h with its unit, such as 60s or 5m`},
+		{"two ways to the degrees", "search --channel bec --rate 0.5 --max-variable-degree 15 --variable-degrees 2,3", "",
+			"--max-variable-degree and --variable-degrees: only one of the two"},
+		{"two briefs", "search a.yaml b.yaml", "",
+			`"b.yaml": unexpected; search takes one brief`},
+		{"an output without a name", "search --channel bec --rate 0.5 --output=", "",
+			`--output "": must be a file name, or - for standard output`},
+		{"one file for two", "simulate BUOYS --channel bec --parameter 0.4 --checkpoint x.svg --plot ./x.svg", "",
+			"--checkpoint and --plot: found the same file, x.svg; allowed: two"},
+		{"a picture over the matrix", "profile BUOYS -o BUOYS", "",
+			"--output: found BUOYS, which is read; allowed: another file"},
+	})
+}
+
+// badInput is a command line and its standard input, in which HEAD stands for
+// the first line of a matrix and BUOYS for the file of one, with the message
+// that it is refused by.
+type badInput struct{ name, args, stdin, want string }
+
+// refused runs what must be refused as wrong usage, with this message and
+// nothing else.
+func refused(t *testing.T, rows []badInput) {
+	t.Helper()
+	for _, c := range rows {
 		t.Run(c.name, func(t *testing.T) {
 			c.stdin = strings.Replace(c.stdin, "HEAD", "%%MatrixMarket matrix coordinate pattern general\n", 1)
-			c.args = strings.Replace(c.args, "BUOYS", buoysMatrix, 1)
+			c.args = strings.ReplaceAll(c.args, "BUOYS", buoysMatrix)
+			c.want = strings.ReplaceAll(c.want, "BUOYS", buoysMatrix)
 			code, stdout, stderr := command(t, c.stdin, strings.Fields(c.args)...)
 			if code != exitUsage || stdout != "" || stderr != "tannery: "+c.want+"\n" {
 				t.Errorf("tannery %s\ncode %d, stdout %q\n got %swant tannery: %s", c.args, code, stdout, stderr, c.want)

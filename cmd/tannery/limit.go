@@ -142,7 +142,7 @@ func (o *limitOptions) shannon(f channel.Family, answer *report.Limit) error {
 	if !o.given() {
 		value, err := f.Inverse(*rate)
 		if err != nil {
-			return invalid(err)
+			return usagef("--rate: %w", err)
 		}
 		answer.Value, answer.Rate, answer.Capacity = &value, rate, new(f.Capacity(value))
 		answer.EbN0DB, answer.EsN0DB = ratios(f, value, *rate)

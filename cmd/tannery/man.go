@@ -3,7 +3,6 @@ package main
 import (
 	"bytes"
 	"fmt"
-	"io/fs"
 	"os"
 	"path/filepath"
 	"strings"
@@ -35,10 +34,7 @@ func runMan(cmd *cobra.Command, args []string) error {
 		return usagef("folder: missing; allowed: a folder for the manual pages")
 	}
 	if info, err := os.Stat(args[0]); err != nil || !info.IsDir() {
-		if err == nil {
-			err = fs.ErrInvalid
-		}
-		return invalid(fmt.Errorf("%s: found no folder; allowed: one that exists: %w", args[0], err))
+		return usagef("%s: found no folder; allowed: a folder that exists", args[0])
 	}
 	pages, err := manualPages(cmd.Root())
 	if err != nil {

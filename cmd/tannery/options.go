@@ -11,6 +11,7 @@ import (
 
 	"github.com/spf13/pflag"
 
+	"tannery/cmd/tannery/internal/brief"
 	"tannery/ensembles"
 	"tannery/ensembles/document"
 )
@@ -103,8 +104,8 @@ type durationOption struct {
 
 func (o *durationOption) Set(text string) error {
 	v, err := time.ParseDuration(text)
-	if err != nil || v <= 0 {
-		return errors.New("a time above 0 with its unit, such as 60s or 5m")
+	if err != nil || v <= 0 || v > brief.MaxTime {
+		return errors.New("a time above 0 and up to 720h with its unit, such as 60s or 5m")
 	}
 	o.value, o.given = v, true
 	return nil
@@ -192,6 +193,8 @@ func flagError(flags *pflag.FlagSet, err error) error {
 		syntax  *pflag.InvalidSyntaxError
 	)
 	switch {
+	case errors.As(err, &value) && value.GetFlag().Value.Type() == "bool":
+		return usagef("--%s: found %q; allowed: true or false", value.GetFlag().Name, value.GetValue())
 	case errors.As(err, &value):
 		if value.GetFlag().Value.Type() == (*distributionOption)(nil).Type() {
 			return usagef("--%s: %w", value.GetFlag().Name, value.Unwrap())

@@ -92,7 +92,7 @@ func valuesFromCSV(name string, data []byte) (v measuredValues, err error) {
 		t.refuse(t.rows[0][0], quoted(strings.Join(names, ",")), header)
 		return v, t.err()
 	}
-	if len(t.rows) == 1 {
+	if len(t.rows) == 1 && len(t.problems) == 0 {
 		t.refuse(t.rows[0][0], "no values", "at least one row of numbers")
 	}
 	for _, row := range t.rows[1:] {

@@ -79,11 +79,15 @@ func (t *table) warn(at cell, text string) {
 // number returns the cell as a number within the range, or reports it.
 func (t *table) number(at cell, r document.Range) float64 {
 	x, ok := parseNumber(at.text)
-	if !ok || !r.Contains(x) {
+	switch {
+	case !ok && strings.ContainsAny(at.text, "; \t"):
+		t.refuse(at, quoted(at.text), "fields separated by commas")
+	case !ok || !r.Contains(x):
 		t.refuse(at, quoted(at.text), r.String())
-		return 0
+	default:
+		return x
 	}
-	return x
+	return 0
 }
 
 func (t *table) err() error {

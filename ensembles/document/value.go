@@ -161,7 +161,7 @@ func (v Value) Bool() bool {
 // Duration returns a length of time from low to high, written with its unit,
 // such as 90s or 1h30m.
 func (v Value) Duration(low, high time.Duration) time.Duration {
-	allowed := fmt.Sprintf("a length of time from %v to %v with its unit, such as 90s or 1h30m", low, high)
+	allowed := fmt.Sprintf("a length of time from %s to %s with its unit, such as 90s or 1h30m", spelled(low), spelled(high))
 	if !v.expect(yaml.ScalarNode, allowed) {
 		return 0
 	}
@@ -171,6 +171,18 @@ func (v Value) Duration(low, high time.Duration) time.Duration {
 		return 0
 	}
 	return d
+}
+
+// spelled writes a length of time without minutes and seconds that are 0.
+func spelled(d time.Duration) string {
+	s := d.String()
+	if strings.HasSuffix(s, "m0s") {
+		s = strings.TrimSuffix(s, "0s")
+	}
+	if strings.HasSuffix(s, "h0m") {
+		s = strings.TrimSuffix(s, "0m")
+	}
+	return s
 }
 
 // Time returns a point in time, written in the form of RFC 3339, in UTC.

@@ -119,7 +119,16 @@ func decodeLink(m *document.Mapping, family channel.Family) *Link {
 	db := m.Optional("es_n0_db")
 	switch {
 	case !db.Present():
-		l.Parameter = m.Required(family.Parameter()).Float(document.Range{Low: best, High: worst, OpenHigh: math.IsInf(worst, 1), OpenLow: true})
+		allowed := document.Range{Low: best, High: worst, OpenHigh: math.IsInf(worst, 1), OpenLow: true}
+		v := m.Optional(family.Parameter())
+		switch {
+		case v.Present():
+			l.Parameter = v.Float(allowed)
+		case family.Parameter() == "sigma":
+			v.Refuse("", allowed.String()+"; or es_n0_db")
+		default:
+			v.Refuse("", allowed.String())
+		}
 	case family.Parameter() != "sigma":
 		db.Refuse("es_n0_db", family.Parameter()+" for the channel "+family.Name())
 	default:

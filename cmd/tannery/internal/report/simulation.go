@@ -6,6 +6,7 @@ import (
 	"fmt"
 	"math"
 	"slices"
+	"strings"
 
 	"tannery/cmd/tannery/internal/report/picture"
 	"tannery/de/channel"
@@ -174,14 +175,14 @@ const (
 func DecodeSimulation(name string, content []byte) (Simulation, error) {
 	var s Simulation
 	if err := json.Unmarshal(content, &s); err != nil {
-		return s, fmt.Errorf("%s: found no JSON object of measured error rates: %w", name, err)
+		return s, jsonError(name, content, err)
 	}
 	if s.Schema != SimulationSchema {
 		return s, fmt.Errorf("%s: schema: found %q; allowed: %s", name, s.Schema, SimulationSchema)
 	}
 	f, err := channel.ByName(s.Channel)
 	if err != nil {
-		return s, fmt.Errorf("%s: %w", name, err)
+		return s, fmt.Errorf("%s: channel: found %q; allowed: %s", name, s.Channel, strings.Join(channel.Names(), ", "))
 	}
 	s.Symbol = f.Symbol()
 	var errs []error
