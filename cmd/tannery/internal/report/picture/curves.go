@@ -27,7 +27,8 @@ type Curve struct {
 }
 
 // CurvePoint is a measured rate with its confidence interval. A rate of 0, no
-// error seen, is drawn as an arrow at its upper bound.
+// error seen, is drawn as an arrow at its upper bound. A rate without an
+// interval, High 0, is theory's: drawn as far down as what is measured.
 type CurvePoint struct{ X, Rate, Low, High float64 }
 
 // CurveLimit is a place on the axis across.
@@ -61,6 +62,9 @@ func (k Curves) Picture() Picture {
 	for _, s := range k.Series {
 		for _, q := range s.Points {
 			x.hold(q.X)
+			if !(q.High > 0) {
+				continue // theory knows no floor
+			}
 			for _, v := range []float64{q.Rate, q.High} {
 				if v > 0 {
 					y.hold(v)
@@ -77,20 +81,32 @@ func (k Curves) Picture() Picture {
 	p.X.Min, p.X.Max = x.padded(0.06)
 	p.Y.Min, p.Y.Max = math.Pow(10, math.Floor(math.Log10(y.low/1.2))), 1
 	var legend []key
+	var bounds []plot.Plotter
 	alt := fmt.Sprintf("Measured error rates; %s", k.Subject)
 	for i, s := range k.Series {
 		style := styles[i%len(styles)]
 		line, dot := stroke(style.colour, 1.4, style.dashes...), glyph(style.colour, 2.8, style.shape)
-		p.Add(area(band(s.Points, p.Y.Min), veiled(style.colour)))
-		var seen, unseen []point
+		for _, outline := range bands(s.Points, p.Y.Min) {
+			if len(outline) == 2 { // a point alone
+				p.Add(polyline(outline, stroke(veiled(style.colour), 4)))
+			}
+			p.Add(area(outline, veiled(style.colour)))
+		}
+		var course, seen, unseen []point
 		for _, q := range s.Points {
-			if q.Rate > 0 {
-				seen = append(seen, point{q.X, q.Rate})
-			} else if q.High > 0 {
+			switch {
+			case q.Rate > 0:
+				course = append(course, point{q.X, q.Rate})
+				if q.Rate >= p.Y.Min {
+					seen = append(seen, point{q.X, q.Rate})
+				}
+			case q.High > 0:
 				unseen = append(unseen, point{q.X, math.Min(q.High, 1)})
 			}
 		}
-		p.Add(polyline(seen, line), markers(seen, dot), arrows(unseen, style.colour))
+		p.Add(polyline(course, line), markers(seen, dot))
+		// Where bits have the bound of frames, that of frames is seen.
+		bounds = append([]plot.Plotter{arrows(unseen, style.colour)}, bounds...)
 		legend = append(legend, key{text: s.Name, line: &line, glyph: &dot})
 		if len(seen) > 0 {
 			last := seen[len(seen)-1]
@@ -100,6 +116,7 @@ func (k Curves) Picture() Picture {
 	if len(k.Series) > 0 {
 		legend = append(legend, key{text: fmt.Sprintf("%g %% confidence", 100*k.Confidence), fill: veiled(styles[0].colour)})
 	}
+	p.Add(bounds...)
 	for i, l := range k.Limits {
 		line := limitStyles[i%len(limitStyles)]
 		p.Add(polyline([]point{{l.X, p.Y.Min}, {l.X, p.Y.Max}}, line))
@@ -113,17 +130,28 @@ func (k Curves) Picture() Picture {
 	}
 }
 
-// band returns the outline of the confidence intervals, cut at the floor.
-func band(points []CurvePoint, floor float64) []point {
+// bands returns the outlines of the confidence intervals, cut at the floor. They
+// are interrupted where no error was seen: the arrow says what is known there,
+// and the bound is far above what neighbours with errors speak for.
+func bands(points []CurvePoint, floor float64) [][]point {
+	var outlines [][]point
 	var upper, lower []point
+	end := func() {
+		if len(upper) > 0 {
+			outlines = append(outlines, append(upper, reversed(lower)...))
+		}
+		upper, lower = nil, nil
+	}
 	for _, q := range points {
-		if !(q.High > 0) {
+		if !(q.Rate > 0 && q.High > 0) {
+			end()
 			continue
 		}
 		upper = append(upper, point{q.X, math.Max(floor, math.Min(1, q.High))})
 		lower = append(lower, point{q.X, math.Max(floor, math.Min(1, q.Low))})
 	}
-	return append(upper, reversed(lower)...)
+	end()
+	return outlines
 }
 
 // arrows point down from upper bounds: the rate is somewhere below.

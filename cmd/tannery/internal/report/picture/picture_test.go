@@ -74,6 +74,11 @@ func samples() map[string]Picture {
 	all["curves"] = curves.Picture()
 	curves.Series = []Curve{{Name: "frames", Points: []CurvePoint{{1, 0, 0, 0.01}}}}
 	all["curve of one arrow"] = curves.Picture()
+	curves.Series = []Curve{
+		{Name: "frames", Points: []CurvePoint{{1, 0, 0, 0.01}, {2, 0.02, 0.01, 0.03}, {3, 0, 0, 0.01}, {4, 0.9, 0.8, 0.95}, {5, 1, 0.9, 1}}},
+		{Name: "theory", Points: []CurvePoint{{X: 1, Rate: 1e-300}, {X: 2, Rate: 1e-37}, {X: 4, Rate: 0.5}, {X: 5, Rate: 1}}},
+	}
+	all["curves with gaps and deep theory"] = curves.Picture()
 	return all
 }
 
