@@ -21,7 +21,7 @@ func TestReportWithSimulation(t *testing.T) {
 			t.Errorf("no %q in\n%s", want, got)
 		}
 	}
-	for _, want := range []string{"Shannon limit at 0.5", "threshold at 0.49", "finite-length limit at frame error rate 0.01 at 0.4", "5\u202f089"} {
+	for _, want := range []string{"Shannon limit at 0.5", "threshold at 0.49", "finite-length limit at frame error rate 0.01 at 0.4", "9\u202f923"} {
 		if !strings.Contains(page, want) {
 			t.Errorf("no %q on the page", want)
 		}
@@ -40,8 +40,8 @@ func TestReportRefusesSimulations(t *testing.T) {
 		{`"bec"`, `"bce"`, `channel: found "bce"; allowed: bec, bsc, biawgn, laplace, rayleigh`},
 		{`"confidence": 0.95`, `"confidence": 95`, "confidence: found 95; allowed: a number above 0 and below 1"},
 		{`"length": 2048`, `"length": 0`, "length: found 0; allowed: a whole number of at least 1"},
-		{`"frames": 5089`, `"frames": 0`, "points[0].frames: found 0; allowed: a whole number of at least 1"},
-		{`"high": 0.04500803689486854`, `"high": 0.001`, "points[0].frame_error_rate: found"},
+		{`"frames": 9923`, `"frames": 0`, "points[0].frames: found 0; allowed: a whole number of at least 1"},
+		{`"high": 0.023115648252363896`, `"high": 0.001`, "points[0].frame_error_rate: found"},
 	} {
 		bad := strings.Replace(string(content), c.old, c.new, 1)
 		if err := os.WriteFile(file, []byte(bad), 0o600); err != nil {

@@ -68,7 +68,8 @@ tannery simulate buoys.mtx --channel biawgn --parameter 0.75 \
     --schedule layered --iterations 10`,
 		Long: `Frames are sent over the channel and decoded: on bec by peeling, elsewhere by
 sum-product in exact LLRs, flooding or layered, until the decisions form a codeword
-or --iterations are over (` + fmt.Sprint(montecarlo.DefaultIterations) + ` if not given; peeling goes on to its end). The all-zero
+or --iterations are over (` + fmt.Sprint(montecarlo.DefaultIterations) + ` if not given; peeling goes on to its end). Bits that
+are left erased, or without a decision, count as wrong. The all-zero
 codeword is sent every time: channels and decoders are symmetric, so that the
 error rates are the same for every codeword (Richardson & Urbanke, 2001).
 
@@ -129,7 +130,11 @@ func runSimulate(cmd *cobra.Command, path string, o *simulateOptions) error {
 	if err != nil {
 		return err
 	}
-	values, err := o.values(cmd, f, 1-float64(g.Checks())/float64(g.Variables()))
+	rate := 1 - float64(g.Checks())/float64(g.Variables())
+	if len(o.ebN0.values) > 0 && rate <= 0 {
+		return usagef("--eb-n0: needs a design rate above 0, because Eb = Es/rate; found %d rows for %d columns; allowed: --parameter or --es-n0", g.Checks(), g.Variables())
+	}
+	values, err := o.values(cmd, f, rate)
 	if err != nil {
 		return err
 	}
@@ -141,6 +146,7 @@ func runSimulate(cmd *cobra.Command, path string, o *simulateOptions) error {
 	if err != nil {
 		return err
 	}
+	warn(cmd, answer.Warnings)
 	interrupted, err := o.measure(cmd, g, f, values, answer, scaling)
 	if err != nil {
 		return err

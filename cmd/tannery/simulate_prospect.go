@@ -48,19 +48,21 @@ func (o *simulateOptions) prospect(cmd *cobra.Command, path string, g *tanner.Gr
 	if err != nil {
 		return nil, nil, err
 	}
-	threshold, err := engine.Threshold(cmd.Context(), e, f)
-	if err != nil {
-		return nil, nil, err
-	}
+	threshold, failed := engine.Threshold(cmd.Context(), e, f)
 	if err := context.Cause(cmd.Context()); err != nil {
 		return nil, nil, err
 	}
 	answer.Warnings = append(answer.Warnings, threshold.Warnings...)
+	if failed != nil { // which is no reason not to measure
+		answer.Warnings = append(answer.Warnings, "threshold: "+failed.Error())
+	}
 	add := func(name string, value float64, frameError *float64) {
 		ebN0, _ := ratios(f, value, answer.DesignRate)
 		answer.Limits = append(answer.Limits, report.SimulationLimit{Name: name, Value: value, EbN0DB: ebN0, FrameError: frameError})
 	}
-	add("threshold", threshold.Value, nil)
+	if failed == nil {
+		add("threshold", threshold.Value, nil)
+	}
 	if limit, err := f.Inverse(answer.DesignRate); err == nil {
 		add("Shannon limit", limit, nil)
 	}

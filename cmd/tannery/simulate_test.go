@@ -133,4 +133,26 @@ func TestInterruptedSimulation(t *testing.T) {
 	if after, err := os.ReadFile(state); err != nil || string(after) != string(before) {
 		t.Error("the refused checkpoint has changed")
 	}
+	// Time that was spent before the interruption is not spent again.
+	var short report.Simulation
+	if err := json.Unmarshal([]byte(succeed(t, "", append(line, "--time", "1ms")...)), &short); err != nil {
+		t.Fatal(err)
+	}
+	if a, b := answer.Points[0], short.Points[0]; a.Frames != b.Frames || a.BitErrors != b.BitErrors {
+		t.Errorf("%d frames interrupted, %d when the time is over", a.Frames, b.Frames)
+	}
+}
+
+// That theory has nothing to say about a matrix is no reason not to measure it;
+// but energy per bit needs bits.
+func TestSimulationWithoutThreshold(t *testing.T) {
+	const tall = "%%MatrixMarket matrix coordinate pattern general\n4 3 9\n1 1\n1 2\n2 2\n2 3\n3 1\n3 3\n4 1\n4 2\n4 3\n"
+	code, stdout, stderr := command(t, tall, "simulate", "-", "--channel", "biawgn", "--parameter", "0.8", "--frames", "50")
+	if code != 0 || !strings.Contains(stdout, "frame error rate") || !strings.Contains(stderr, "there is no threshold") {
+		t.Errorf("code %d, %s, %s", code, stdout, stderr)
+	}
+	code, _, stderr = command(t, tall, "simulate", "-", "--channel", "biawgn", "--eb-n0", "3")
+	if code != exitUsage || !strings.Contains(stderr, "--eb-n0: needs a design rate above 0, because Eb = Es/rate; found 4 rows for 3 columns; allowed: --parameter or --es-n0") {
+		t.Errorf("code %d, %s", code, stderr)
+	}
 }

@@ -3,6 +3,8 @@ package main
 import (
 	"encoding/json"
 	"fmt"
+	"slices"
+	"time"
 
 	"github.com/spf13/cobra"
 
@@ -11,6 +13,13 @@ import (
 	"tannery/de/montecarlo"
 	"tannery/ensembles/tanner"
 )
+
+// timed is what was measured at one value, and how long that took, since --time
+// counts what was spent before an interruption.
+type timed struct {
+	montecarlo.Measurement
+	Spent time.Duration `json:"nanoseconds"`
+}
 
 // measure makes the trials at all values, and adds a point to the answer for
 // each at which there were any. It tells whether it was interrupted.
@@ -25,28 +34,49 @@ func (o *simulateOptions) measure(cmd *cobra.Command, g *tanner.Graph, f channel
 			warn(cmd, []string{failed.Error()})
 		}
 	}()
+	keep := func() {
+		if kept != nil {
+			state, _ := json.Marshal(done) // of numbers, which cannot fail
+			kept.keep(state)
+		}
+	}
 	shown := newProgress(cmd.ErrOrStderr(), o.noProgress || quiet(cmd), 0)
 	defer shown.finish()
 	limits := montecarlo.Limits{
-		Frames: int64(o.frames.value), FrameErrors: int64(o.frameErrors.value), Time: o.time.value, Workers: o.workers.value,
+		Frames: int64(o.frames.value), FrameErrors: int64(o.frameErrors.value), Workers: o.workers.value,
 	}
+	var last time.Time // of the state that was handed over
 	for i, value := range values {
 		trials := montecarlo.Trials{
 			Graph: g, Family: f, Parameter: value, Iterations: o.iterations.value, Schedule: montecarlo.Schedule(o.schedule.value), Seed: o.seed.value,
 		}
-		m, status, err := trials.Run(cmd.Context(), done[i], limits, func(m montecarlo.Measurement) {
-			done[i] = m
-			if kept != nil {
-				state, _ := json.Marshal(done) // of numbers, which cannot fail
-				kept.keep(state)
+		start, earlier := time.Now(), done[i].Spent
+		if o.time.value > 0 {
+			limits.Time = o.time.value - earlier
+			if limits.Time <= 0 { // spent before the interruption
+				if done[i].Counts.Frames > 0 {
+					answer.Points = append(answer.Points, o.point(done[i].Measurement, montecarlo.TimeUp, f, answer, scaling))
+				}
+				continue
+			}
+		}
+		m, status, err := trials.Run(cmd.Context(), done[i].Measurement, limits, func(m montecarlo.Measurement) {
+			done[i] = timed{m, earlier + time.Since(start)}
+			if time.Since(last) > checkpointInterval/10 {
+				keep()
+				last = time.Now()
 			}
 			share := max(float64(m.Counts.Frames)/float64(limits.Frames), float64(m.Counts.FrameErrors)/float64(limits.FrameErrors))
-			shown.update(fmt.Sprintf("%d of %d, %s %.6g", i+1, len(values), f.Symbol(), value), (float64(i)+share)/float64(len(values)),
+			if o.time.value > 0 {
+				share = max(share, float64(done[i].Spent)/float64(o.time.value))
+			}
+			shown.update(fmt.Sprintf("%d of %d, %s %.6g", i+1, len(values), f.Symbol(), value), (float64(i)+min(share, 1))/float64(len(values)),
 				fmt.Sprintf("%d of %d frames wrong", m.Counts.FrameErrors, m.Counts.Frames), 0)
 		})
 		if err != nil {
 			return false, usagef("%s: %w", o.checkpoint, err)
 		}
+		keep()
 		if m.Counts.Frames > 0 {
 			answer.Points = append(answer.Points, o.point(m, status, f, answer, scaling))
 		}
@@ -60,8 +90,8 @@ func (o *simulateOptions) measure(cmd *cobra.Command, g *tanner.Graph, f channel
 
 // resume opens the checkpoint, if there is one, and returns what is measured
 // at each value.
-func (o *simulateOptions) resume(cmd *cobra.Command, matrix string, values []float64) (*checkpoint, []montecarlo.Measurement, error) {
-	done := make([]montecarlo.Measurement, len(values))
+func (o *simulateOptions) resume(cmd *cobra.Command, matrix string, values []float64) (*checkpoint, []timed, error) {
+	done := make([]timed, len(values))
 	if !cmd.Flags().Changed("checkpoint") {
 		return nil, done, nil
 	}
@@ -76,7 +106,7 @@ func (o *simulateOptions) resume(cmd *cobra.Command, matrix string, values []flo
 	if err != nil || state == nil {
 		return kept, done, err
 	}
-	if err := json.Unmarshal(state, &done); err != nil || len(done) != len(values) {
+	if err := json.Unmarshal(state, &done); err != nil || len(done) != len(values) || slices.ContainsFunc(done, func(t timed) bool { return t.Spent < 0 }) {
 		kept.close(false)
 		return nil, nil, usagef("%s: found a damaged checkpoint; allowed: that of this measurement, another --checkpoint, or to remove the file and start anew", o.checkpoint)
 	}

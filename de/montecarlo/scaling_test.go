@@ -48,8 +48,19 @@ func TestScalingOfRegularEnsembles(t *testing.T) {
 		if p := s.FrameErrorRate(1<<40, threshold); math.Abs(p-0.5) > 0.01 {
 			t.Errorf("(%d,%d): frame error rate %g at the threshold of a very long code, want about 1/2", test.dv, test.dc, p)
 		}
-		if p := s.BitErrorRate(1000, 1) / s.FrameErrorRate(1000, 1); !(p > x*0.5 && p < threshold) {
-			t.Errorf("(%d,%d): %g of the bits left", test.dv, test.dc, p)
+		// Far above the threshold and for a very long code, density evolution;
+		// at the threshold and for a long code half of what is left there.
+		above, left := threshold*1.1, 1.0
+		for range 1000 {
+			left = above * math.Pow(1-math.Pow(1-left, float64(test.dc-1)), float64(test.dv-1))
+		}
+		left = above * math.Pow(1-math.Pow(1-left, float64(test.dc-1)), float64(test.dv))
+		if p := s.BitErrorRate(1<<40, above); math.Abs(p-left) > 1e-3*left {
+			t.Errorf("(%d,%d): bit error rate %g above the threshold, density evolution %g", test.dv, test.dc, p, left)
+		}
+		left = threshold * math.Pow(1-math.Pow(1-x, float64(test.dc-1)), float64(test.dv))
+		if p := s.BitErrorRate(1<<40, threshold); math.Abs(p-left/2) > 0.02*left {
+			t.Errorf("(%d,%d): bit error rate %g at the threshold of a very long code, want about %g", test.dv, test.dc, p, left/2)
 		}
 	}
 }

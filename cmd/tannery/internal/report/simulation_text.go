@@ -4,7 +4,12 @@ import (
 	"encoding/csv"
 	"io"
 	"strconv"
+
+	"tannery/de/channel"
 )
+
+// interruptedStatus is the status of a point whose trials were interrupted.
+const interruptedStatus = "interrupted"
 
 // WriteText writes the curve for people.
 func (s *Simulation) WriteText(w io.Writer) error {
@@ -34,6 +39,20 @@ func (s *Simulation) WriteText(w io.Writer) error {
 	t.Paragraph("Rates with the ends of their %s %% confidence intervals. iter: iterations on average.", s.ConfidencePercent())
 	if predicted {
 		t.Paragraph("by law: the scaling law of the profile, α = %s, β = %s.", Significant(s.Scaling.Alpha, 4), Significant(s.Scaling.Beta, 4))
+	}
+	switch {
+	case predicted || s.Channel != (channel.BEC{}).Name():
+	case s.Scaling == nil:
+		t.Paragraph("No scaling law beside it: no single critical point sets the threshold of this profile.")
+	default:
+		t.Paragraph("No scaling law beside it: at this length more than one critical point of the profile decides.")
+	}
+	if n := len(s.Points); n > 0 && s.Points[n-1].Status == interruptedStatus {
+		t.Paragraph("Interrupted: the last row has fewer trials than asked for, and later values are missing.")
+	}
+	if len(s.Limits) == 0 {
+		_, err := t.WriteTo(w)
+		return err
 	}
 	t.Heading("Limits beside it")
 	for _, l := range s.Limits {
