@@ -122,7 +122,13 @@ func runReport(cmd *cobra.Command, args []string, o *reportOptions) error {
 	if page.Threshold.Gap != nil {
 		threshold = &page.Threshold.Threshold
 	}
-	for _, s := range simulations {
+	for i, s := range simulations {
+		if threshold != nil && s.Channel == f.Name() && engine.Method() == de.DefaultMethod(f) {
+			if note := otherProfile(s, *threshold); note != "" {
+				page.Simulations[i].Note = note
+				warn(cmd, []string{o.simulations[i] + ": " + note})
+			}
+		}
 		page.Marks = append(page.Marks, simulationMarks(s, f, threshold, o.frameError.value))
 	}
 	page.Provenance.Command = o.again(cmd, args, f, engine)

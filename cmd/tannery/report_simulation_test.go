@@ -28,6 +28,20 @@ func TestReportWithSimulation(t *testing.T) {
 	}
 }
 
+// A curve of another profile's matrix is shown beside its own threshold, and
+// the page says so.
+func TestReportWithSimulationOfAnotherProfile(t *testing.T) {
+	code, page, stderr := command(t, "", "report", "ru01-r50-d3", "--channel", "bec", "--simulation", measured)
+	if code != 0 || !strings.Contains(stderr, measured+": its matrix has the threshold ε = 0.489962, this profile 0.42944: it seems to be that of another profile") {
+		t.Errorf("code %d, %s", code, stderr)
+	}
+	for _, want := range []string{"Note: its matrix has the threshold", "threshold at 0.49; Shannon", "2\u202f048 code bits, peeling;"} {
+		if !strings.Contains(page, want) {
+			t.Errorf("no %q on the page", want)
+		}
+	}
+}
+
 func TestReportRefusesSimulations(t *testing.T) {
 	content, err := os.ReadFile(measured)
 	if err != nil {

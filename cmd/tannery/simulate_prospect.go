@@ -61,7 +61,7 @@ func (o *simulateOptions) prospect(cmd *cobra.Command, path string, g *tanner.Gr
 		answer.Limits = append(answer.Limits, report.SimulationLimit{Name: name, Value: value, EbN0DB: ebN0, FrameError: frameError})
 	}
 	if failed == nil {
-		add("threshold", threshold.Value, nil)
+		add(report.ThresholdName, threshold.Value, nil)
 	}
 	if limit, err := f.Inverse(answer.DesignRate); err == nil {
 		add("Shannon limit", limit, nil)

@@ -36,6 +36,20 @@ type Simulation struct {
 
 	Name   string `json:"-"` // of the file
 	Symbol string `json:"-"`
+	Note   string `json:"-"` // for the reader of a page; none if empty
+}
+
+// ThresholdName is the name of the threshold among the limits.
+const ThresholdName = "threshold"
+
+// Threshold returns the recorded threshold of the matrix, nil if there is none.
+func (s Simulation) Threshold() *SimulationLimit {
+	for i, l := range s.Limits {
+		if l.Name == ThresholdName {
+			return &s.Limits[i]
+		}
+	}
+	return nil
 }
 
 // SimulationLimit is a limit beside the curve: the threshold, the Shannon
@@ -88,6 +102,18 @@ func (s Simulation) HasDB() bool {
 
 // SimulationCells is a row of the table.
 type SimulationCells struct{ Value, EbN0, Frames, FrameRate, BitRate string }
+
+// Conditions are what was measured, for the caption.
+func (s Simulation) Conditions() string {
+	text := s.Channel + ", " + grouped(s.Length) + " code bits"
+	if s.Decoder != "" {
+		text += ", " + s.Decoder
+	}
+	if s.Iterations > 0 {
+		text += ", at most " + grouped(s.Iterations) + " iterations"
+	}
+	return text
+}
 
 // Cells returns the rows of the table.
 func (s Simulation) Cells() []SimulationCells {
@@ -202,6 +228,14 @@ func DecodeSimulation(name string, content []byte) (Simulation, error) {
 		refuse("points", "none", "at least one")
 	}
 	best, worst := f.Range()
+	for i, l := range s.Limits {
+		if !(l.Value >= best && l.Value <= min(worst, largestParameter)) {
+			refuse(fmt.Sprintf("limits[%d].value", i), l.Value, fmt.Sprintf("a parameter of %s, from %v to %v", f.Name(), best, min(worst, largestParameter)))
+		}
+		if l.EbN0DB != nil && !(math.Abs(*l.EbN0DB) <= largestDB) {
+			refuse(fmt.Sprintf("limits[%d].eb_n0_db", i), *l.EbN0DB, fmt.Sprintf("a number from -%d to %d", largestDB, largestDB))
+		}
+	}
 	for i, p := range s.Points {
 		if !(p.Value >= best && p.Value <= min(worst, largestParameter)) {
 			refuse(fmt.Sprintf("points[%d].value", i), p.Value, fmt.Sprintf("a parameter of %s, from %v to %v", f.Name(), best, min(worst, largestParameter)))
