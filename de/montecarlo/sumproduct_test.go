@@ -270,3 +270,25 @@ func BenchmarkMemory(b *testing.B) {
 	}
 	b.ReportMetric(float64(len(messages))*float64(b.N)/b.Elapsed().Seconds()/1e6, "Medges/s")
 }
+
+// What the memory allows a decoder, whose variables lie all over it: an
+// iteration on the graph of the largest BenchmarkSumProduct without the check
+// rule.
+func BenchmarkMemoryScattered(b *testing.B) {
+	g := regularGraph(b, 3, 6, 1_000_000, tanner.Settings{Method: tanner.Randomized, Girth: 4})
+	s := newSumProduct(g, Flooding)
+	var block [blockEdges]float32
+	for b.Loop() {
+		for first := 0; first < len(s.messages); first += blockEdges {
+			end := min(first+blockEdges, len(s.messages))
+			for i, v := range s.variables[first:end] {
+				block[i] = s.bits[v][0] - s.messages[first+i]
+			}
+			copy(s.messages[first:end], block[:])
+			for i, v := range s.variables[first:end] {
+				s.bits[v][1] += block[i]
+			}
+		}
+	}
+	b.ReportMetric(float64(g.Edges())*float64(b.N)/b.Elapsed().Seconds()/1e6, "Medges/s")
+}
