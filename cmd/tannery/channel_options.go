@@ -10,6 +10,7 @@ import (
 	"github.com/spf13/cobra"
 
 	"tannery/cmd/tannery/internal/brief"
+	"tannery/cmd/tannery/internal/report"
 	"tannery/de/channel"
 	"tannery/ensembles"
 	"tannery/ensembles/document"
@@ -181,12 +182,10 @@ func ratios(f channel.Family, parameter, rate float64) (ebN0, esN0 *float64) {
 	if !hasRatio(f) || !(parameter > 0) {
 		return nil, nil
 	}
-	es := channel.EsN0DB(parameter)
 	if rate > 0 {
-		eb := channel.EbN0DB(parameter, rate)
-		ebN0 = &eb
+		ebN0 = report.Finite(channel.EbN0DB(parameter, rate))
 	}
-	return ebN0, &es
+	return ebN0, report.Finite(channel.EsN0DB(parameter))
 }
 
 // complete offers names for the value of an option to the shell.

@@ -4,6 +4,7 @@ import (
 	"cmp"
 	"context"
 	"errors"
+	"fmt"
 	"math"
 	"runtime"
 	"slices"
@@ -130,7 +131,10 @@ func runCompare(cmd *cobra.Command, args []string, o *compareOptions) error {
 			jobs = append(jobs, comparison{profileName(args[i : i+1]), p, f, engine})
 		}
 	}
-	if answer.Rows, err = measureAll(cmd.Context(), jobs, o.distance.value, o.workers.value); err != nil {
+	rested := busy(cmd, fmt.Sprintf("measuring %d thresholds", len(jobs)))
+	answer.Rows, err = measureAll(cmd.Context(), jobs, o.distance.value, o.workers.value)
+	rested()
+	if err != nil {
 		return err
 	}
 	for n := range families {
@@ -235,9 +239,9 @@ func unique(errs []error) []error {
 
 func (c comparison) measure(ctx context.Context, distance float64) (report.CompareRow, error) {
 	e := c.profile.Ensemble
-	threshold, err := c.engine.Threshold(ctx, e, c.family)
+	threshold, err := bounded(c.engine.Threshold(ctx, e, c.family))
 	if err != nil {
-		return report.CompareRow{}, methodError(err)
+		return report.CompareRow{}, err
 	}
 	t := thresholdAnswer(c.profile, c.family, threshold)
 	row := report.CompareRow{

@@ -1,6 +1,7 @@
 package main
 
 import (
+	"math"
 	"slices"
 
 	"github.com/spf13/cobra"
@@ -202,6 +203,9 @@ func (o *limitOptions) link(capacity float64) (*report.LinkAnswer, error) {
 	b, err := link.Budget()
 	if err != nil {
 		return nil, invalid(err)
+	}
+	if math.IsInf(b.RawCodeRate, 1) {
+		return nil, usagef("--source-rate and --symbol-rate: found %v and %v; allowed: rates whose ratio is a number", link.BitRate, link.SymbolRate)
 	}
 	return &report.LinkAnswer{
 		SourceRate:         link.BitRate,

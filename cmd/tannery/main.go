@@ -37,6 +37,9 @@ func run(ctx context.Context, args []string, stdin io.Reader, stdout, stderr io.
 	if err == nil {
 		return exitDone
 	}
+	if errors.Is(err, context.Canceled) && ctx.Err() != nil {
+		err = context.Cause(ctx) // how it came about, in our words
+	}
 	code := exitCode(ctx, err)
 	if code != exitClosedPipe {
 		printError(stderr, err)

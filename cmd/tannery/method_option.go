@@ -2,6 +2,7 @@ package main
 
 import (
 	"errors"
+	"math"
 
 	"github.com/spf13/cobra"
 
@@ -50,4 +51,13 @@ func methodError(err error) error {
 			wrong.Method, wrong.Channel, wrong.Method, listOf(wrong.Covered))
 	}
 	return err
+}
+
+// bounded passes a threshold on, but for one that no channel of the family is
+// too bad for.
+func bounded(t de.Threshold, err error) (de.Threshold, error) {
+	if err == nil && math.IsInf(t.Value, 1) {
+		err = errors.New("there is no threshold: decoding succeeds on every channel of the family")
+	}
+	return t, methodError(err)
 }

@@ -69,8 +69,12 @@ func prepareOutput(path string) (*outputFile, error) {
 	if err != nil {
 		return nil, err
 	}
-	unlockFile(probe)
-	return out, nil
+	defer unlockFile(probe)
+	if out.exists {
+		// Some file systems know no permissions.
+		err = probe.Chmod(out.mode)
+	}
+	return out, err
 }
 
 // sweep removes what processes have left that were killed while they wrote the
@@ -175,8 +179,12 @@ func syncFolder(path string) error {
 // outputError names the file as the user did, once, with what went wrong.
 func outputError(option, path string, err error) error {
 	var pathError *fs.PathError
-	if errors.As(err, &pathError) {
+	var linkError *os.LinkError
+	switch {
+	case errors.As(err, &pathError):
 		err = pathError.Err
+	case errors.As(err, &linkError):
+		err = linkError.Err
 	}
 	if option != "" {
 		option += " "

@@ -42,7 +42,7 @@ func TestSimulationIsReproducible(t *testing.T) {
 // A measurement that is killed again and again ends in the same counts, and
 // leaves nothing but its answer.
 func TestKilledSimulationEndsInTheSameCounts(t *testing.T) {
-	const line = "simulate " + buoysMatrix + " --channel biawgn --eb-n0 0.5,1.25 --frame-errors 1000 --seed 9 --no-progress --json"
+	const line = "simulate " + buoysMatrix + " --channel biawgn --eb-n0 0.5,1.25 --frame-errors 400 --seed 9 --no-progress --json"
 	want := succeed(t, "", strings.Fields(line)...)
 	folder := t.TempDir()
 	state := filepath.Join(folder, "state")
@@ -57,7 +57,7 @@ func TestKilledSimulationEndsInTheSameCounts(t *testing.T) {
 		}
 		done := make(chan error, 1)
 		go func() { done <- cmd.Wait() }()
-		pause := time.Duration(100+random.IntN(700)) * time.Millisecond
+		pause := time.Duration(50+random.IntN(500)) * time.Millisecond
 		if kills >= 12 {
 			pause = time.Hour
 		}

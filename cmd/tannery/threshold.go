@@ -83,7 +83,9 @@ func runThreshold(cmd *cobra.Command, args []string, o *thresholdOptions) error 
 	if err != nil {
 		return err
 	}
+	rested := busy(cmd, "finding the threshold")
 	answer, err := o.answer(cmd.Context(), engine, p, f)
+	rested()
 	if err != nil {
 		return err
 	}
@@ -156,14 +158,13 @@ const beyondLimit = "the threshold lies beyond the Shannon limit, which no decod
 // measure finds the threshold, with the limit on iterations if there is one.
 func (o *thresholdOptions) measure(ctx context.Context, engine de.Engine, e ensembles.Ensemble, f channel.Family) (de.Threshold, error) {
 	if !o.iterations.given {
-		threshold, err := engine.Threshold(ctx, e, f)
-		return threshold, methodError(err)
+		return bounded(engine.Threshold(ctx, e, f))
 	}
 	threshold, err := de.Limited(ctx, engine, e, f, o.iterations.value, o.targetError.value)
 	if errors.Is(err, de.ErrUnreachable) {
 		return threshold, unreachedError{err}
 	}
-	return threshold, methodError(err)
+	return bounded(threshold, err)
 }
 
 // gapOf returns the gap in the form that files have.

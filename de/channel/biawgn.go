@@ -62,9 +62,14 @@ func (BIAWGN) Density(sigma float64) Density {
 		PDF: func(x float64) float64 {
 			return scale * math.Exp(-(x-m)*(x-m)/(4*m)) * (1 + math.Exp(-x))
 		},
-		End: math.Inf(1),
+		End: m + vanishing*math.Sqrt(2*m),
 	}
 }
+
+// vanishing is the number of standard deviations after which e^(-x²/2) is
+// below all floating-point numbers. Ends of densities tell those who integrate
+// them their scale, which may be far below that of a grid.
+const vanishing = 39
 
 // certain returns the density of a bit known for certain with the given
 // probability and otherwise erased.

@@ -67,7 +67,7 @@ func (Rayleigh) Density(sigma float64) Density {
 		PDF: func(x float64) float64 {
 			return alpha * beta / r * (math.Exp(-alpha*x) + math.Exp(-beta*x))
 		},
-		End: math.Inf(1),
+		End: vanishing * vanishing / 2 / alpha,
 	}
 }
 

@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"math"
 	"slices"
+	"strconv"
 
 	"tannery/de/channel"
 	"tannery/ensembles"
@@ -128,6 +129,10 @@ func (d *Draft) checkCapacities() {
 	}
 }
 
+// leastRate is the least design rate that comes out as asked: it is 1 less a
+// ratio, which floating point knows to 1e-16.
+const leastRate = 1e-6
+
 // checkDegrees compares the rate with what the degrees allow: every design
 // rate is at most 1 - dv/dc with the least variable and the largest check
 // degree, and at least 1 - dv/dc with the largest and the least.
@@ -147,6 +152,8 @@ func (d *Draft) checkDegrees() {
 	case d.Rate > upper || d.Rate == upper && low != high:
 		d.refuse(key, number(d.Rate), fmt.Sprintf("a rate below %.6g, which is 1 - %d/%d with the least variable degree %d and the largest check degree %d",
 			upper, low, most, low, most))
+	case d.Rate < leastRate:
+		d.refuse(key, number(d.Rate), fmt.Sprintf("a rate of at least %g: below it rounding would change the rate", leastRate))
 	case d.Rate < lower:
 		d.refuse(key, number(d.Rate), fmt.Sprintf("a rate above %.6g, which is 1 - %d/%d with the largest variable degree %d and the least check degree %d",
 			lower, high, least, high, least))
@@ -162,4 +169,6 @@ func (d *Draft) checkDegrees() {
 	}
 }
 
-func number(x float64) string { return fmt.Sprintf("%.6g", x) }
+// number writes a number with all its digits, so that what is refused is not
+// mistaken for what is allowed.
+func number(x float64) string { return strconv.FormatFloat(x, 'g', -1, 64) }

@@ -106,9 +106,9 @@ func (r *Trace) WriteText(w io.Writer) error {
 func (r *Trace) outcomeText(last TracePoint) string {
 	switch r.Outcome {
 	case "converged":
-		return fmt.Sprintf("converged: errors vanish (%d iterations followed)", last.Iteration)
+		return fmt.Sprintf("converged: errors vanish (%s followed)", iterationsInWords(last.Iteration))
 	case "stalled":
-		return fmt.Sprintf("stalled after %d iterations: a fixed point at message entropy %s bit, bit error probability %s", last.Iteration, Significant(last.Entropy, 4), Significant(last.BitErrorProbability, 4))
+		return fmt.Sprintf("stalled after %s: a fixed point at message entropy %s bit, bit error probability %s", iterationsInWords(last.Iteration), Significant(last.Entropy, 4), Significant(last.BitErrorProbability, 4))
 	case "exhausted":
 		return fmt.Sprintf("undecided: the %d iterations allowed came first", last.Iteration)
 	}
@@ -150,4 +150,11 @@ func thin(n int, keep *int, limit int) []int {
 		}
 	}
 	return shown
+}
+
+func iterationsInWords(n int) string {
+	if n == 1 {
+		return "1 iteration"
+	}
+	return fmt.Sprintf("%d iterations", n)
 }
