@@ -48,7 +48,14 @@ func closings(runs []course) []closing {
 		found = append(found, closing{parameter: last.parameter + 1/most, entropy: last.entropy[i], depth: last.depth[i]})
 	}
 	slices.SortStableFunc(found, func(a, b closing) int { return cmp.Compare(a.parameter, b.parameter) })
-	return found
+	// Where the tunnel is flat, rounding makes many of one.
+	var apart []closing
+	for _, c := range found {
+		if !slices.ContainsFunc(apart, func(k closing) bool { return math.Abs(k.depth-c.depth) < sameDepth }) {
+			apart = append(apart, c)
+		}
+	}
+	return apart
 }
 
 // closesAt extrapolates to rate 0 at one depth: through the last two courses
