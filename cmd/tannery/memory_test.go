@@ -32,6 +32,7 @@ func TestSmallInputsCostLittle(t *testing.T) {
 		{"a brief of many degrees", "search - --evaluations 1", "kind: brief\nversion: 1\nchannel: bec\nrate: 0.5\nvariable_degrees: {max: 99999999999}\n"},
 		{"a matrix of promises", "profile -", "%%MatrixMarket matrix coordinate pattern general\n1000000000 1000000000 2000000000\n1 1\n"},
 		{"a matrix of wide promises", "profile -", "%%MatrixMarket matrix coordinate pattern general\n2147483647 2147483647 2147483647\n1 1\n"},
+		{"a symmetric matrix of promises", "profile -", "%%MatrixMarket matrix coordinate integer symmetric\n1073741823 1073741823 1073741823\n1 1 1\n"},
 		{"a long line", "profile -", "%%MatrixMarket matrix coordinate pattern general\n" + strings.Repeat("1", 100*small)},
 		{"a channel of one long row", "limit --matrix -", strings.Repeat("0.1,", small)},
 		{"a channel of commas", "limit --channel - --rate 0.5", strings.Repeat(",", small)},

@@ -33,7 +33,8 @@ tannery profile buoys.mtx -o - --quiet | tannery threshold - --channel biawgn
 tannery profile buoys.mtx -o buoys-found.yaml`,
 		Long: `MATRIX is a parity-check matrix as a Matrix Market coordinate pattern, from
 whichever program: rows are check nodes and columns code bits. Every row and
-every column must have an entry, and none may be repeated.
+every column must have an entry, and none may be repeated. Coordinate files of
+integers or reals will do if all entries are 1, and so will symmetric ones.
 
 With -o FILE the profile, which has the exact node counts, goes to that file;
 with -o - to standard output, and the report to standard error.`,

@@ -7,11 +7,6 @@ import (
 	"strings"
 )
 
-// banner is the first line of a Matrix Market file of a sparse 0-1 matrix
-// (Boisvert, Pozo & Remington, The Matrix Market exchange formats, NISTIR
-// 5935, 1996).
-const banner = "%%MatrixMarket matrix coordinate pattern general"
-
 // Label tells where a matrix comes from. It travels in the comments of a
 // Matrix Market file, one line each, as "% title: text". Empty parts are left
 // out; line breaks become spaces.

@@ -83,6 +83,18 @@ func TestReadMatrix(t *testing.T) {
 		{"repeated", head + "2 2 4\n1 1\n% between\n2 2\n2 1\n\n2 2\n", "matrix:8: found row 2, column 2 again; allowed: once, in line 5"},
 		{"empty row", head + "3 2 3\n1 1\n3 2\n3 1\n", "matrix: found row 2 of 3 empty"},
 		{"empty column", head + "2 3 3\n1 1\n2 3\n1 3\n", "matrix: found column 2 of 3 empty"},
+		{"integer", "%%MatrixMarket matrix coordinate integer general\n2 2 2\n1 1 1\n2 2 1 \n", ""},
+		{"real", "%%MatrixMarket matrix coordinate real general\n2 2 2\n1 1 1.0\n2 2 1.0000000000000000e+00\n", ""},
+		{"other value", "%%MatrixMarket matrix coordinate real general\n2 2 2\n1 1 1.0\n2 2 0.5\n", "matrix:4: found \"2 2 0.5\"; allowed: ROW COLUMN 1, as all entries of a parity-check matrix are 1"},
+		{"explicit zero", "%%MatrixMarket matrix coordinate integer general\n1 1 1\n1 1 0\n", "matrix:3: found \"1 1 0\"; allowed: ROW COLUMN 1, as"},
+		{"no value", "%%MatrixMarket matrix coordinate integer general\n1 1 1\n1 1\n", "matrix:3: found \"1 1\"; allowed: ROW COLUMN 1, as"},
+		{"complex", "%%MatrixMarket matrix coordinate complex general\n1 1 1\n1 1 1 0\n", "matrix:1: found \"%%MatrixMarket matrix coordinate complex general\"; allowed: " + banner + ", or integer or real for pattern"},
+		{"symmetric", "%%MatrixMarket matrix coordinate pattern symmetric\n2 2 2\n1 1\n2 1\n", ""},
+		{"not square", "%%MatrixMarket matrix coordinate pattern symmetric\n2 3 3\n", "matrix:2: found 2 rows and 3 columns; allowed: as many rows as columns"},
+		{"above the diagonal", "%%MatrixMarket matrix coordinate pattern symmetric\n2 2 2\n1 1\n1 2\n", "matrix:4: found row 1, column 2; allowed: entries on or below the diagonal"},
+		{"repeated below the diagonal", "%%MatrixMarket matrix coordinate pattern symmetric\n2 2 2\n2 1\n2 1\n", "matrix:4: found row 2, column 1 again; allowed: once, in line 3"},
+		{"a symmetric promise", "%%MatrixMarket matrix coordinate pattern symmetric\n5 5 2\n", "matrix:2: found 5 rows and 2 entries; allowed: an entry in every row"},
+		{"too many symmetric entries", "%%MatrixMarket matrix coordinate pattern symmetric\n9 9 2000000000\n", "matrix:2: found 2000000000 entries; allowed: at most 1073741823"},
 		{"long comment", head + "%" + strings.Repeat("x", 3*maxLine) + "\n1 1 1\n1 1\n", ""},
 		{"long line", head + strings.Repeat("1", 3*maxLine), "matrix:2:"},
 	} {
@@ -93,6 +105,40 @@ func TestReadMatrix(t *testing.T) {
 		case test.want != "" && (err == nil || !strings.HasPrefix(err.Error(), test.want)):
 			t.Errorf("%s: error %v, want %s", test.name, err, test.want)
 		}
+	}
+}
+
+// The incidence matrix of the Fano plane by the difference set {0,1,3} is
+// symmetric with c + v modulo 7 in the set: general or by its lower triangle,
+// with values or without, it is the same.
+func TestReadMatrixFormats(t *testing.T) {
+	var graphs []*Graph
+	for _, field := range []string{"pattern", "integer", "real"} {
+		for _, symmetry := range []string{"general", "symmetric"} {
+			var entries []string
+			for c := range 7 {
+				for v := range 7 {
+					if sum := (c + v) % 7; (sum == 0 || sum == 1 || sum == 3) && (symmetry == "general" || v <= c) {
+						value := map[string]string{"integer": " 1", "real": " 1e0"}[field]
+						entries = append(entries, fmt.Sprintf("%d %d%s\n", c+1, v+1, value))
+					}
+				}
+			}
+			text := fmt.Sprintf("%%%%MatrixMarket matrix coordinate %s %s\n7 7 %d\n%s", field, symmetry, len(entries), strings.Join(entries, ""))
+			g, _, err := ReadMatrix("matrix", strings.NewReader(text))
+			if err != nil {
+				t.Fatalf("%s %s: %v", field, symmetry, err)
+			}
+			graphs = append(graphs, g)
+		}
+	}
+	for i, g := range graphs {
+		if !same(g, graphs[0]) || g.Edges() != 21 {
+			t.Errorf("format %d: another graph, with %d edges", i, g.Edges())
+		}
+	}
+	if rank := rankOf(t, graphs[0]); rank != 4 {
+		t.Errorf("rank %d, want 4", rank)
 	}
 }
 
@@ -108,7 +154,10 @@ func TestReadMatrixReportsReaderErrors(t *testing.T) {
 func FuzzReadMatrix(f *testing.F) {
 	f.Add([]byte(banner + "\n% title: a\n2 3 4\n1 1\n2 2\n1 3\n2 3\n"))
 	f.Add([]byte(banner + "\r\n\r\n1 1 1\r\n1 1\r\n"))
-	f.Add([]byte("%%MatrixMarket matrix coordinate pattern symmetric\n"))
+	f.Add([]byte("%%MatrixMarket matrix coordinate pattern symmetric\n3 3 4\n1 1\n2 1\n3 2\n3 3\n"))
+	f.Add([]byte("%%MatrixMarket matrix coordinate integer symmetric\n2 2 2\n2 1 1\n2 2 1\n"))
+	f.Add([]byte("%%MatrixMarket matrix coordinate real general\n% seed: 7\n2 2 2\n1 1 1.0\n2 2 1e+00\n"))
+	f.Add([]byte(banner + "\n2 2 4\n1 1\n% between\n2 2\n2 1\n\n2 2\n"))
 	f.Add([]byte(banner + "\n999999999 999999999 2147483647\n1 1\n"))
 	f.Fuzz(func(t *testing.T, data []byte) {
 		g, label, err := ReadMatrix("matrix", bytes.NewReader(data))

@@ -15,12 +15,13 @@ import (
 const maxLine = 1 << 16
 
 // ReadMatrix reads a Matrix Market coordinate pattern as a parity-check
-// matrix: rows are check nodes and columns variable nodes. Comments and blank
-// lines may stand anywhere after the first line, and lines may end with CR
-// LF. Every row and every column must have an entry and no entry may be
-// repeated. Errors begin with the name of the file and the number of the line
-// at fault. Memory grows with what has been read, never with what the size line
-// promises.
+// matrix: rows are check nodes and columns variable nodes. Integer and real
+// matrices are read too if all their entries are 1, and symmetric ones.
+// Comments and blank lines may stand anywhere after the first line, and lines
+// may end with CR LF. Every row and every column must have an entry and no
+// entry may be repeated. Errors begin with the name of the file and the number
+// of the line at fault. Memory grows with what has been read, never with what
+// the size line promises.
 func ReadMatrix(name string, r io.Reader) (*Graph, Label, error) {
 	m := matrixReader{lines: bufio.NewReaderSize(r, maxLine)}
 	if err := m.read(); err != nil {
@@ -35,8 +36,9 @@ func ReadMatrix(name string, r io.Reader) (*Graph, Label, error) {
 type matrixReader struct {
 	lines                  *bufio.Reader
 	line                   int // number of the line in hand, 0 if none is at fault
+	format                 matrixFormat
 	rows, columns, entries int
-	edges                  []Edge
+	edges                  []Edge // one for each entry read
 	offsets                []lineOffset
 	graph                  *Graph
 	label                  Label
@@ -50,8 +52,8 @@ func (m *matrixReader) read() error {
 	if err != nil {
 		return m.ended(err, "it must begin with "+banner)
 	}
-	if !slices.Equal(strings.Fields(strings.ToLower(string(text))), strings.Fields(strings.ToLower(banner))) {
-		return fmt.Errorf("found %q; allowed: %s", shorten(text), banner)
+	if m.format, err = parseBanner(text); err != nil {
+		return err
 	}
 	if text, err = m.nextData(); err != nil {
 		return m.ended(err, "the line of rows, columns and entries is missing")
@@ -136,18 +138,28 @@ func (m *matrixReader) readComment(text []byte) {
 
 func (m *matrixReader) readSize(text []byte) error {
 	var size [3]int
-	if err := parseNumbers(text, size[:], "ROWS COLUMNS ENTRIES"); err != nil {
+	rest, err := parseNumbers(text, size[:], "ROWS COLUMNS ENTRIES")
+	if err != nil {
 		return err
 	}
+	if len(bytes.TrimSpace(rest)) > 0 {
+		return fmt.Errorf("found %q; allowed: ROWS COLUMNS ENTRIES and nothing else", shorten(text))
+	}
 	m.rows, m.columns, m.entries = size[0], size[1], size[2]
+	most := m.entries // that can be filled with these entries
+	if m.format.symmetric {
+		most *= 2
+	}
 	switch {
 	case m.rows == 0 || m.columns == 0:
 		return fmt.Errorf("found %d rows and %d columns; allowed: at least 1", m.rows, m.columns)
-	case m.entries > MaxEdges:
-		return fmt.Errorf("found %d entries; allowed: at most %d", m.entries, MaxEdges)
-	case m.rows > m.entries:
+	case m.format.symmetric && m.rows != m.columns:
+		return fmt.Errorf("found %d rows and %d columns; allowed: as many rows as columns in a symmetric matrix", m.rows, m.columns)
+	case most > MaxEdges:
+		return fmt.Errorf("found %d entries; allowed: at most %d", m.entries, MaxEdges/(most/m.entries))
+	case m.rows > most:
 		return fmt.Errorf("found %d rows and %d entries; allowed: an entry in every row", m.rows, m.entries)
-	case m.columns > m.entries:
+	case m.columns > most:
 		return fmt.Errorf("found %d columns and %d entries; allowed: an entry in every column", m.columns, m.entries)
 	}
 	return nil
@@ -155,7 +167,11 @@ func (m *matrixReader) readSize(text []byte) error {
 
 func (m *matrixReader) readEntry(text []byte) error {
 	var at [2]int
-	if err := parseNumbers(text, at[:], "ROW COLUMN"); err != nil {
+	rest, err := parseNumbers(text, at[:], m.format.form())
+	if err != nil {
+		return err
+	}
+	if err := m.format.checkValue(text, rest); err != nil {
 		return err
 	}
 	if at[0] < 1 || at[0] > m.rows {
@@ -163,6 +179,9 @@ func (m *matrixReader) readEntry(text []byte) error {
 	}
 	if at[1] < 1 || at[1] > m.columns {
 		return fmt.Errorf("found column %d; allowed: from 1 to %d", at[1], m.columns)
+	}
+	if m.format.symmetric && at[0] < at[1] {
+		return fmt.Errorf("found row %d, column %d; allowed: entries on or below the diagonal, as the matrix is symmetric", at[0], at[1])
 	}
 	lines := m.line - len(m.edges)
 	if last := len(m.offsets) - 1; last < 0 || m.offsets[last].lines != lines {
@@ -172,31 +191,28 @@ func (m *matrixReader) readEntry(text []byte) error {
 	return nil
 }
 
-// parseNumbers reads exactly as many whole numbers as the list has, written
-// in decimal digits and separated by spaces or tabs.
-func parseNumbers(text []byte, list []int, form string) error {
-	rest := text
+// parseNumbers reads as many whole numbers as the list has, written in decimal
+// digits and separated by spaces or tabs, and returns the rest of the line.
+func parseNumbers(text []byte, list []int, form string) (rest []byte, err error) {
+	rest = text
 	for i := range list {
 		rest = bytes.TrimLeft(rest, " \t")
 		digits := 0
 		n := 0
 		for digits < len(rest) && rest[digits] >= '0' && rest[digits] <= '9' {
 			if n > MaxEdges {
-				return fmt.Errorf("found %q; allowed: numbers of at most %d", shorten(text), MaxEdges)
+				return nil, fmt.Errorf("found %q; allowed: numbers of at most %d", shorten(text), MaxEdges)
 			}
 			n = 10*n + int(rest[digits]-'0')
 			digits++
 		}
 		if digits == 0 || digits < len(rest) && rest[digits] != ' ' && rest[digits] != '\t' {
-			return fmt.Errorf("found %q; allowed: %s in whole numbers", shorten(text), form)
+			return nil, fmt.Errorf("found %q; allowed: %s in whole numbers", shorten(text), form)
 		}
 		list[i] = n
 		rest = rest[digits:]
 	}
-	if len(bytes.TrimSpace(rest)) > 0 {
-		return fmt.Errorf("found %q; allowed: %s and nothing else", shorten(text), form)
-	}
-	return nil
+	return rest, nil
 }
 
 // shorten makes a line fit into a message.
@@ -215,6 +231,14 @@ func (m *matrixReader) assemble() error {
 		second := first + 1 + slices.Index(m.edges[first+1:], Edge{v, c})
 		m.line = m.lineOf(second)
 		return fmt.Errorf("found row %d, column %d again; allowed: once, in line %d", c+1, v+1, m.lineOf(first))
+	}
+	if m.format.symmetric {
+		for _, e := range m.edges {
+			if e.Variable != e.Check {
+				m.edges = append(m.edges, Edge{e.Check, e.Variable})
+			}
+		}
+		g = assemble(m.columns, m.rows, m.edges)
 	}
 	m.line = 0
 	for c := range g.Checks() {
