@@ -2,6 +2,7 @@ package de
 
 import (
 	"math"
+	"slices"
 
 	"tannery/de/channel"
 	"tannery/de/density"
@@ -14,7 +15,7 @@ import (
 // channel is taken that brings B back to where it was. At variable nodes B
 // multiplies, so with C the parameter of the messages from check nodes that
 // channel's own is B/λ(C). What would lead out of the tunnel is thereby shut
-// off, and what is left settles quickly. (Holding a functional of the density
+// off, and what is left settles, quickly with Anderson's acceleration. (Holding a functional of the density
 // and letting the channel float is how Méasson, Montanari, Richardson &
 // Urbanke trace EBP GEXIT curves: The generalized area theorem and some of its
 // consequences, IEEE Trans. Inf. Theory 55(11), 2009; they hold the entropy.)
@@ -30,16 +31,20 @@ type fixedPoints struct {
 	variable *density.VariableNode
 	nearby   nearby
 
+	known, erased         *density.Density // messages of parameter 0 and 1
 	checks, channel, next *density.Density // working space
 	iterations            int
 }
 
 const (
 	// fixedPointSteps ends an iteration that does not settle.
-	fixedPointSteps = 400
-	// steadyRatio is by how much the ratio of successive changes may vary for
-	// the error to count as one geometric sequence, which is then summed.
-	steadyRatio = 0.15
+	fixedPointSteps = 200
+	// noiseWindow is over how many iterations it is judged whether rounding
+	// is all that still moves the parameter, and noiseLevel how much of it
+	// rounding may move. At rate 1/100, where messages say little, it moves
+	// about 1e-8.
+	noiseWindow = 10
+	noiseLevel  = 1e-6
 )
 
 func newFixedPoints(e ensembles.Ensemble, g *density.Grid, f channel.Family, parameter float64) *fixedPoints {
@@ -48,6 +53,8 @@ func newFixedPoints(e ensembles.Ensemble, g *density.Grid, f channel.Family, par
 		family:   f,
 		check:    g.NewCheckNode(e.Rho),
 		nearby:   nearby{family: f, grid: g},
+		known:    g.NewDensity(),
+		erased:   g.Project(channel.BEC{}.Density(1)),
 		checks:   g.NewDensity(),
 		channel:  g.NewDensity(),
 		next:     g.NewDensity(),
@@ -58,12 +65,14 @@ func newFixedPoints(e ensembles.Ensemble, g *density.Grid, f channel.Family, par
 }
 
 // settle takes messages to the fixed point at which their Bhattacharyya
-// parameter is b. It returns the channel parameter there and how far that may
-// be off, at most tolerance times itself if the iteration settled; infinite
-// where there is none in the family.
+// parameter is b, which they are given at once by erasing some or making some
+// certain. It returns the channel parameter there and how far that may be off:
+// at most tolerance times itself if the iteration settled, more if rounding
+// prevents that; infinite where there is none in the family.
 func (p *fixedPoints) settle(messages *density.Density, b, tolerance float64) (parameter, error float64) {
-	var recent []float64 // parameters of successive iterations
-	error = math.Inf(1)
+	p.give(messages, b)
+	var faster density.Anderson
+	var tried []float64 // parameters of successive iterations
 	for range fixedPointSteps {
 		p.check.Apply(p.checks, messages)
 		need := b / p.ensemble.Lambda.At(p.checks.Bhattacharyya())
@@ -75,27 +84,47 @@ func (p *fixedPoints) settle(messages *density.Density, b, tolerance float64) (p
 		p.variable.SetChannel(p.channel)
 		p.variable.Apply(p.next, p.checks)
 		p.iterations++
-		recent = append(recent, parameter)
-		if n := len(recent); n > 3 {
-			ratio := (recent[n-1] - recent[n-2]) / (recent[n-2] - recent[n-3])
-			before := (recent[n-2] - recent[n-3]) / (recent[n-3] - recent[n-4])
-			error = math.Abs(recent[n-1] - recent[n-2])
-			if size := math.Abs(ratio); size < 1 {
-				error *= max(1, size/(1-size))
-			}
-			if !(error > tolerance*parameter) {
-				messages.Copy(p.next)
-				break
-			}
-			if ratio < 1 && math.Abs(ratio-before) < steadyRatio*math.Abs(ratio) {
-				// One geometric sequence: on to its limit.
-				w := 1 / (1 - ratio)
-				messages.Combine([]float64{1 - w, w}, []*density.Density{messages, p.next})
-				recent = recent[:0]
-				continue
-			}
+		tried = append(tried, parameter)
+		error = spread(tried, 3)
+		if error <= tolerance*parameter {
+			messages.Copy(p.next)
+			break
 		}
-		messages.Copy(p.next)
+		if wide := spread(tried, noiseWindow); wide <= noiseLevel*parameter && wanders(tried[len(tried)-noiseWindow:]) {
+			messages.Copy(p.next)
+			error = wide
+			break
+		}
+		faster.Next(messages, p.next)
 	}
 	return parameter, error
+}
+
+// give makes the Bhattacharyya parameter of messages b.
+func (p *fixedPoints) give(messages *density.Density, b float64) {
+	have, extreme := messages.Bhattacharyya(), p.known
+	if have < b {
+		extreme = p.erased
+	}
+	share := (b - have) / (extreme.Bhattacharyya() - have)
+	messages.Combine([]float64{1 - share, share}, []*density.Density{messages, extreme})
+}
+
+// spread returns the difference between the largest and the least of the last
+// n values, infinite if there are fewer.
+func spread(values []float64, n int) float64 {
+	if len(values) < n {
+		return math.Inf(1)
+	}
+	values = values[len(values)-n:]
+	return slices.Max(values) - slices.Min(values)
+}
+
+// wanders tells whether values go to and fro rather than somewhere.
+func wanders(values []float64) bool {
+	way := 0.0
+	for i := range values[1:] {
+		way += math.Abs(values[i+1] - values[i])
+	}
+	return math.Abs(values[len(values)-1]-values[0]) < way/4
 }

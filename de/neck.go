@@ -25,11 +25,13 @@ const (
 	wideSpan   = 0.02
 	narrowSpan = 0.004
 	neckReach  = 1.5
-	// neckError is the relative error of a neck, neckTolerance that of the
-	// fixed points in its parabola, strideError that of those on the way
-	// there; strideTries is how often a stride is shortened that does not
-	// settle, and neckTries how often the parabola is moved.
+	// neckError is the relative error of a neck, or noisyError where rounding
+	// does not let it become that small; neckTolerance is that of the fixed
+	// points in its parabola, strideError that of those on the way there;
+	// strideTries is how often a stride is shortened that does not settle, and
+	// neckTries how often the parabola is moved.
 	neckError     = 1e-9
+	noisyError    = noiseLevel
 	neckTolerance = 1e-10
 	strideError   = 1e-7
 	strideTries   = 3
@@ -73,13 +75,14 @@ func (p *fixedPoints) neck(messages *density.Density, span, tolerance float64) (
 			bracketed = true
 		}
 	}
-	for range neckTries {
+	for try := 1; try <= neckTries; try++ {
 		around := func(log float64) stand {
 			return p.stand(between(left, middle, right, log), log, neckTolerance)
 		}
 		lowest, least := vertex(left, middle, right)
 		n := around(lowest)
-		if n.error += math.Abs(n.parameter-least) + neckTolerance*least; n.error <= neckError*least {
+		n.error += math.Abs(n.parameter-least) + neckTolerance*least
+		if n.error <= neckError*least || try == neckTries && n.error <= noisyError*least {
 			return neck{n}, true
 		}
 		left, middle, right = around(lowest-narrowSpan), n, around(lowest+narrowSpan)
