@@ -137,12 +137,31 @@ func TestLimitedUncertainty(t *testing.T) {
 		if err != nil {
 			t.Fatal(err)
 		}
-		finer, err := limitedBy(ctx, QuantizedEngine{tracePoints: 4096}, c.e, c.f, c.iterations, c.target, got.Value)
+		l := limit{engine: QuantizedEngine{tracePoints: 4096}, e: c.e, f: c.f, iterations: c.iterations, target: c.target}
+		finer, err := l.threshold(ctx, got.Value, gridTolerance)
 		if err != nil {
 			t.Fatal(err)
 		}
 		if d := math.Abs(got.Value - finer.Value); d > got.Uncertainty || got.Uncertainty > 2e-3*got.Value {
 			t.Errorf("%s, %d iterations to %g: %.9g ± %.2g, but %.9g on a finer grid", c.f.Name(), c.iterations, c.target, got.Value, got.Uncertainty, finer.Value)
 		}
+	}
+}
+
+// With very many iterations it is the threshold without a limit but for a
+// little, at the cost of a few evolutions that use them: by bisection thirty.
+func TestLimitedManyIterations(t *testing.T) {
+	const iterations = 3000
+	e, f := ensembles.Regular(3, 6), channel.BIAWGN{}
+	got, err := Limited(context.Background(), QuantizedEngine{}, e, f, iterations, 1e-9)
+	if err != nil {
+		t.Fatal(err)
+	}
+	without := quantizedThreshold(t, e, f)
+	if short := without.Value - got.Value; short < 0 || short > 4e-6 {
+		t.Errorf("%.9g after %d iterations, %.9g without a limit", got.Value, iterations, without.Value)
+	}
+	if got.Iterations > 2*12*iterations {
+		t.Errorf("%d iterations spent on two grids", got.Iterations)
 	}
 }
