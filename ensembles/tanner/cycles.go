@@ -25,14 +25,20 @@ func (s *sockets) removeCycles(ctx context.Context, girth int, random *rand.Rand
 		return nil
 	}
 	p := newProbe(s)
+	survey := newSurvey(s)
 	bound := min(cycleWork, cycleWorkPerEdge*len(s.mate))
 	for length := int32(4); length < int32(girth); length += 2 {
 		p.work = 0
 		for v := int32(0); v < s.frozen && p.work < bound; v++ {
-			if v%1024 == 0 {
+			if v%surveyed == 0 {
 				if err := ctx.Err(); err != nil {
 					return err
 				}
+				survey.take(v, length)
+			}
+			if work := survey.clear(v); work > 0 {
+				p.work += work
+				continue
 			}
 			for {
 				a, b, found := p.cycleAt(v, length)
@@ -42,7 +48,7 @@ func (s *sockets) removeCycles(ctx context.Context, girth int, random *rand.Rand
 				if random.Uint32()&1 == 0 {
 					a, b = b, a
 				}
-				if !p.reroute(a, length, random) && !p.reroute(b, length, random) {
+				if !p.reroute(a, length, random, survey) && !p.reroute(b, length, random, survey) {
 					break
 				}
 			}
@@ -53,7 +59,7 @@ func (s *sockets) removeCycles(ctx context.Context, girth int, random *rand.Rand
 
 // reroute exchanges the check nodes of the edge and a random other one so
 // that both new edges lie on no cycle of the given length or less.
-func (p *probe) reroute(edge, length int32, random *rand.Rand) bool {
+func (p *probe) reroute(edge, length int32, random *rand.Rand, y *survey) bool {
 	for range cycleTries {
 		other := random.Int32N(p.s.movable())
 		if !p.s.swappable(edge, other) {
@@ -61,6 +67,7 @@ func (p *probe) reroute(edge, length int32, random *rand.Rand) bool {
 		}
 		p.s.swap(edge, other)
 		if !p.onCycle(edge, length) && !p.onCycle(other, length) {
+			p.outdate(y, edge, other)
 			return true
 		}
 		p.s.swap(edge, other)
