@@ -50,6 +50,10 @@ func (GaussianEngine) Threshold(ctx context.Context, e ensembles.Ensemble, f cha
 		Value:      sigmaOfMean(t.best.s),
 		Iterations: t.points,
 	}
+	if out.Value > largestSigma {
+		out.Value, out.Warnings = math.Inf(1), []string{alwaysWarning}
+		return enforceStability(out, e, f), nil
+	}
 	slices.SortFunc(t.maxima, func(a, b tunnelPoint) int {
 		if a.s > b.s {
 			return -1
@@ -62,11 +66,12 @@ func (GaussianEngine) Threshold(ctx context.Context, e ensembles.Ensemble, f cha
 			out.Critical = append(out.Critical, Critical{Entropy: state.entropy(e.Lambda, f), Slack: slack})
 		}
 	}
-	if t.best.s == 0 {
-		out.Warnings = append(out.Warnings, alwaysWarning)
-	}
 	return enforceStability(out, e, f), nil
 }
+
+// largestSigma is the σ above which the approximations, and their rounding, are
+// taken to converge on every channel; the capacity there is 1e-8.
+const largestSigma = 1e4
 
 const alwaysWarning = "the approximation converges on every channel, however bad: it does not hold for this ensemble"
 

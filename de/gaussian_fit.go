@@ -26,9 +26,6 @@ const (
 	// fitSigmaTolerance is the relative width at which the bisection of
 	// σ ends: three digits beyond those of the printed table.
 	fitSigmaTolerance = 1e-7
-	// fitLargestSigma is the σ up to which a threshold is looked for; the
-	// capacity there is 1e-8.
-	fitLargestSigma = 1e4
 	// fitIterations bounds one evolution: close to the threshold it takes
 	// about 10/√(relative distance) iterations to pass.
 	fitIterations = 200_000
@@ -77,7 +74,7 @@ func (GaussianFitEngine) Threshold(ctx context.Context, e ensembles.Ensemble, f 
 	low, high := 0.0, 1.0
 	for passes(high) {
 		low, high = high, 2*high
-		if high > fitLargestSigma {
+		if high > largestSigma {
 			low = math.Inf(1)
 			out.Warnings = append(out.Warnings, alwaysWarning)
 			break

@@ -133,3 +133,12 @@ func BenchmarkGaussian(b *testing.B) {
 func BenchmarkGaussianFit(b *testing.B) {
 	benchmarkThreshold(b, GaussianFitEngine{}, ensembles.Regular(3, 6), channel.BIAWGN{})
 }
+
+// Where checks of degree 2 pass on what few messages say, the approximation
+// never stops: rounding must not be taken for a threshold.
+func TestGaussianWithoutEnd(t *testing.T) {
+	got, err := GaussianEngine{}.Threshold(context.Background(), ensembles.Regular(2, 2), channel.BIAWGN{})
+	if err != nil || !math.IsInf(got.Value, 1) || len(got.Warnings) == 0 {
+		t.Errorf("%v, %v; want no end and a warning", got, err)
+	}
+}

@@ -74,8 +74,8 @@ func (Rayleigh) Density(sigma float64) Density {
 // SNR implements Family: the mean of Es/N0, 1/(2σ²).
 func (Rayleigh) SNR(sigma float64) (snr float64, ok bool) { return EsN0(sigma), true }
 
-// rayleighUseless is the γ below which 1/γ may overflow: C is below 1e-300.
-const rayleighUseless = 1e-300
+// rayleighUseless is the γ below which 1/γ may overflow.
+const rayleighUseless = 1e-307
 
 // rayleighDecay describes the density of the LLR at the mean Es/N0 γ. Given
 // a, the LLR is Gaussian with mean 2a²/σ² and variance twice that. Averaged
