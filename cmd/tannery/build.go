@@ -63,6 +63,9 @@ check nodes; free follows the profile to the letter, with an error floor.
 The report tells the girth and the number of shortest cycles through a variable
 node, the rank over GF(2) with the true rate, and the gap of an approximate lower
 triangular form, which decides what encoding costs (Richardson & Urbanke, 2001).
+The time for the rank grows with the third power of that gap; where it would be
+more than some ten seconds, as beyond two million columns with three ones each, the
+rank is left out unless --rank asks for it.
 
 The file is a Matrix Market coordinate pattern: rows are check nodes, columns
 code bits; comments carry the title, the SHA-256 of the profile, and the seed.

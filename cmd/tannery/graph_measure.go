@@ -16,12 +16,13 @@ type graphOptions struct {
 	noProgress bool
 }
 
-// rankGap is the largest gap of the approximate triangle up to which the rank
-// is computed unasked: the time grows with its third power.
-const rankGap = 8192
+// rankWork is the most work, in additions of words, that is done for the rank
+// unasked: some ten seconds on two processors. It is the same on every machine,
+// so that reports are too.
+const rankWork = 8e9
 
 func (o *graphOptions) add(cmd *cobra.Command) {
-	cmd.Flags().BoolVar(&o.rank, "rank", false, "compute the rank even of a very long code, for minutes")
+	cmd.Flags().BoolVar(&o.rank, "rank", false, "compute the rank even if that takes more than some ten seconds")
 	cmd.Flags().BoolVar(&o.noProgress, "no-progress", false, "no progress on standard error")
 }
 
@@ -47,7 +48,7 @@ func (o *graphOptions) measure(cmd *cobra.Command, g *tanner.Graph, shown *progr
 		Gap:        triangle.Gap(),
 		Digest:     g.Digest(),
 	}
-	if o.rank || triangle.Gap() <= rankGap {
+	if o.rank || triangle.RankWork() <= rankWork {
 		shown.update("computing the rank", 0, "", 0)
 		rank, err := triangle.Rank(ctx)
 		if err != nil {

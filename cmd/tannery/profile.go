@@ -36,6 +36,9 @@ whichever program: rows are check nodes and columns code bits. Every row and
 every column must have an entry, and none may be repeated. Coordinate files of
 integers or reals will do if all entries are 1, and so will symmetric ones.
 
+The rank over GF(2), and with it the true rate, is left out where it would take
+more than some ten seconds, unless --rank asks for it.
+
 With -o FILE the profile, which has the exact node counts, goes to that file;
 with -o - to standard output, and the report to standard error.`,
 		Args:              exactly(1, "one matrix"),

@@ -3,140 +3,190 @@ package tanner
 import (
 	"context"
 	"math/bits"
+	"runtime"
+	"sync"
+	"sync/atomic"
 )
 
-// bitMatrix is a dense matrix over GF(2), 64 columns to a word.
+// laneWords is the number of 64-bit words in a lane.
+const laneWords = 16
+
+// lane is a stretch of a row, 1024 columns: long enough to pay for finding it,
+// and short enough for thousands of them to stay in a processor's own cache.
+type lane [laneWords]uint64
+
+func (l *lane) add(x *lane) {
+	for w := range l {
+		l[w] ^= x[w]
+	}
+}
+
+// bitMatrix is a dense matrix over GF(2), 64 columns to a word. It is kept in
+// panels, each of which has one lane of every row, so that processors can work
+// on different panels.
 type bitMatrix struct {
-	rows, columns, words int
-	bits                 []uint64
-	pivots               []int // after reduce: the leading column of each row
+	rows, columns int
+	panels        [][]lane
+	pivots        []int // after reduce: the leading column of each row
 }
 
 func newBitMatrix(rows, columns int) *bitMatrix {
-	words := (columns + 63) / 64
-	return &bitMatrix{rows: rows, columns: columns, words: words, bits: make([]uint64, rows*words)}
+	m := &bitMatrix{rows: rows, columns: columns, panels: make([][]lane, (columns+64*laneWords-1)/(64*laneWords))}
+	for p := range m.panels {
+		m.panels[p] = make([]lane, rows)
+	}
+	return m
 }
 
-func (m *bitMatrix) row(i int) []uint64 { return m.bits[i*m.words : (i+1)*m.words] }
+// word returns a word of a row.
+func (m *bitMatrix) word(row, word int) *uint64 {
+	return &m.panels[word/laneWords][row][word%laneWords]
+}
 
 // append adds the rows of a matrix of the same width.
 func (m *bitMatrix) append(other *bitMatrix) {
-	m.bits = append(m.bits, other.bits...)
+	for p := range m.panels {
+		m.panels[p] = append(m.panels[p], other.panels[p]...)
+	}
 	m.rows += other.rows
 }
 
-// stripe is the number of columns that reduce handles at a time: 2^stripe
-// combinations of pivot rows are tabulated. Eight keep the strip of a row in
-// one byte and the table, of 256 rows, small beside the matrix.
-const stripe = 8
+// Sizes in reduce: a stripe is as many columns as a word has, and cut into
+// cuts of as many as have a table of their own.
+const (
+	stripe = 64
+	cut    = 8
+)
 
 // reduce brings the matrix to reduced echelon form and drops rows of zeros,
 // by the method of the four Russians (Arlazarov, Dinic, Kronrod & Faradžev,
-// Soviet Math. Doklady 11(5), 1970; for elimination: Albrecht, Bard & Pernet,
-// Efficient dense Gaussian elimination over the finite field with two
-// elements, 2011). For a stripe of columns pivot rows are found and reduced
-// among themselves; all sums of them are tabulated, each from the one before
-// by one addition; and every other row is cleared in the stripe by adding one
-// entry of the table.
+// Soviet Math. Doklady 11(5), 1970; for elimination, with several tables at
+// once: Albrecht, Bard & Pernet, Efficient dense Gaussian elimination over the
+// finite field with two elements, 2011). For a stripe of columns pivot rows
+// are found and reduced among themselves; for each cut of it all sums of its
+// pivot rows are tabulated; and every other row is cleared in the stripe by
+// adding one entry of each table. Panels are independent but for the stripe
+// itself, which says what to add.
 func (m *bitMatrix) reduce(ctx context.Context) error {
 	m.pivots = m.pivots[:0]
-	table := make([]uint64, (1<<stripe)*m.words)
+	tables := make([]sums, min(runtime.GOMAXPROCS(0), len(m.panels)))
+	step := pivoting{patterns: make([]uint64, m.rows)}
 	for first := 0; first < m.columns; first += stripe {
 		if err := ctx.Err(); err != nil {
 			return err
 		}
-		top := len(m.pivots)
-		strips := m.findPivots(first, top)
-		found := len(m.pivots) - top
-		if found == 0 {
+		if !m.pivot(&step, first/64) {
 			continue
 		}
-		m.isolate(strips, first, top)
-		index := m.tabulate(table, first, top)
-		word := first / 64
-		for i := range m.rows {
-			if i >= top && i < top+found {
-				continue
-			}
-			row := m.row(i)
-			if k := index[row[word]>>(first%64)&(1<<stripe-1)]; k != 0 {
-				for w, x := range table[k*m.words+word : (k+1)*m.words] {
-					row[word+w] ^= x
+		var next atomic.Int64
+		next.Store(int64(first / 64 / laneWords))
+		var workers sync.WaitGroup
+		for i := range tables {
+			workers.Go(func() {
+				for p := next.Add(1) - 1; int(p) < len(m.panels); p = next.Add(1) - 1 {
+					tables[i].clear(m.panels[p], &step)
 				}
-			}
+			})
 		}
+		workers.Wait()
 	}
 	m.rows = len(m.pivots)
-	m.bits = m.bits[:m.rows*m.words]
+	for p := range m.panels {
+		m.panels[p] = m.panels[p][:m.rows]
+	}
 	return nil
 }
 
-// findPivots moves rows that are independent within the stripe to the top
-// rows and notes their leading columns. It looks only at the strips: each is
-// reduced by the pivots found before, without touching the rows. It returns
-// the reduced strips of the pivots.
-func (m *bitMatrix) findPivots(first, top int) (strips []uint8) {
-	for i := top; i < m.rows && len(strips) < stripe; i++ {
-		strip := uint8(m.row(i)[first/64] >> (first % 64))
-		for k, s := range strips {
-			if strip>>(m.pivots[top+k]-first)&1 != 0 {
-				strip ^= s
+// pivoting is what is to be done to all panels for one stripe.
+type pivoting struct {
+	top       int        // first of the pivot rows
+	additions []addition // that isolate the leading columns of the pivot rows
+	rowAt     [stripe]int
+	// The stripe of every row that has to be cleared, 0 of others.
+	patterns []uint64
+}
+
+// addition says that one row is added to another, both counted from the top.
+type addition struct{ to, from int }
+
+// pivot moves rows that are independent within a stripe behind the pivot rows
+// there are, notes their leading columns, and finds what is to be done. It
+// looks at the stripe only: each row's is reduced by those of the pivots found
+// before, without touching the rows. It returns false if there are none.
+func (m *bitMatrix) pivot(s *pivoting, word int) bool {
+	s.top, s.additions = len(m.pivots), s.additions[:0]
+	for column := range s.rowAt {
+		s.rowAt[column] = -1
+	}
+	var strips []uint64
+	for i := s.top; i < m.rows && len(strips) < stripe; i++ {
+		strip := *m.word(i, word)
+		mark := len(s.additions)
+		for k, x := range strips {
+			if strip>>(m.pivots[s.top+k]%64)&1 != 0 {
+				strip ^= x
+				s.additions = append(s.additions, addition{len(strips), k})
 			}
 		}
 		if strip == 0 {
+			s.additions = s.additions[:mark]
 			continue
 		}
-		to := top + len(strips)
-		a, b := m.row(i), m.row(to)
-		for w := range a {
-			a[w], b[w] = b[w], a[w]
+		for _, panel := range m.panels[word/laneWords:] {
+			a, b := &panel[i], &panel[s.top+len(strips)]
+			*a, *b = *b, *a
 		}
+		column := bits.TrailingZeros64(strip)
+		s.rowAt[column] = s.top + len(strips)
+		m.pivots = append(m.pivots, 64*word+column)
 		strips = append(strips, strip)
-		m.pivots = append(m.pivots, first+bits.TrailingZeros8(strip))
 	}
-	return strips
-}
-
-// isolate adds the pivot rows of a stripe to each other so that each leading
-// column has a single one among them.
-func (m *bitMatrix) isolate(strips []uint8, first, top int) {
-	for pass := range 2 {
-		// Downwards each row is cleared by those above it, as its strip has
-		// been; then upwards those above are cleared by it.
-		for i := range strips {
-			for k := range strips {
-				if pass == 0 && k < i || pass == 1 && k > i {
-					a, b := m.row(top+i), m.row(top+k)
-					if column := m.pivots[top+k]; a[column/64]>>(column%64)&1 != 0 {
-						for w, x := range b {
-							a[w] ^= x
-						}
-					}
-				}
+	// Each has been cleared in the leading columns of those above it; those
+	// above are cleared in its own.
+	for k := len(strips) - 1; k > 0; k-- {
+		for i := range k {
+			if strips[i]>>(m.pivots[s.top+k]%64)&1 != 0 {
+				strips[i] ^= strips[k]
+				s.additions = append(s.additions, addition{i, k})
 			}
 		}
 	}
+	for i := range m.rows {
+		s.patterns[i] = *m.word(i, word)
+	}
+	clear(s.patterns[s.top : s.top+len(strips)])
+	return len(strips) > 0
 }
 
-// tabulate fills the table with all sums of the pivot rows of a stripe, the
-// k-th with the bits of k as coefficients, and returns the index of the entry
-// that clears each pattern of the stripe.
-func (m *bitMatrix) tabulate(table []uint64, first, top int) (index [1 << stripe]int) {
-	found := len(m.pivots) - top
-	clear(table[:m.words])
-	for k := 1; k < 1<<found; k++ {
-		low := k & -k
-		to, from, row := table[k*m.words:(k+1)*m.words], table[(k^low)*m.words:], m.row(top+bits.TrailingZeros(uint(low)))
-		for w, x := range row {
-			to[w] = from[w] ^ x
+// sums are the tables for one panel: for each cut of the stripe and each
+// pattern of it, the sum of the pivot rows that clear it.
+type sums [stripe / cut][1 << cut]lane
+
+// clear does to a panel what is to be done for a stripe.
+func (t *sums) clear(panel []lane, s *pivoting) {
+	for _, a := range s.additions {
+		panel[s.top+a.to].add(&panel[s.top+a.from])
+	}
+	for c := range t {
+		for pattern := 1; pattern < 1<<cut; pattern++ {
+			low := bits.TrailingZeros(uint(pattern))
+			t[c][pattern] = t[c][pattern&(pattern-1)]
+			if row := s.rowAt[c*cut+low]; row >= 0 {
+				t[c][pattern].add(&panel[row])
+			}
 		}
 	}
-	for pattern := range index {
-		for k, column := range m.pivots[top:] {
-			index[pattern] |= pattern >> (column - first) & 1 << k
+	for i, pattern := range s.patterns[:len(panel)] {
+		if pattern == 0 {
+			continue
+		}
+		a, b, c, d := &t[0][uint8(pattern)], &t[1][uint8(pattern>>8)], &t[2][uint8(pattern>>16)], &t[3][uint8(pattern>>24)]
+		e, f, g, h := &t[4][uint8(pattern>>32)], &t[5][uint8(pattern>>40)], &t[6][uint8(pattern>>48)], &t[7][uint8(pattern>>56)]
+		row := &panel[i]
+		for w := range row {
+			row[w] ^= a[w] ^ b[w] ^ c[w] ^ d[w] ^ e[w] ^ f[w] ^ g[w] ^ h[w]
 		}
 	}
-	return index
 }
 
 // kernel returns a basis of the vectors that all rows of a reduced matrix are
@@ -152,12 +202,11 @@ func (m *bitMatrix) kernel() *bitMatrix {
 		if leading[column] {
 			continue
 		}
-		y := basis.row(k)
-		k++
-		y[column/64] |= 1 << (column % 64)
+		*basis.word(k, column/64) |= 1 << (column % 64)
 		for i, pivot := range m.pivots {
-			y[pivot/64] |= m.row(i)[column/64] >> (column % 64) & 1 << (pivot % 64)
+			*basis.word(k, pivot/64) |= *m.word(i, column/64) >> (column % 64) & 1 << (pivot % 64)
 		}
+		k++
 	}
 	return basis
 }

@@ -2,7 +2,10 @@ package tanner
 
 import (
 	"context"
+	"math/bits"
 	"math/rand/v2"
+	"runtime"
+	"slices"
 	"testing"
 )
 
@@ -184,6 +187,130 @@ func BenchmarkRank64800(b *testing.B) {
 	}
 	for b.Loop() {
 		if _, err := g.Triangulate().Rank(context.Background()); err != nil {
+			b.Fatal(err)
+		}
+	}
+}
+
+// Matrices wider and higher than lanes and stripes, of full and of deficient
+// rank, against plain elimination.
+func TestReduceAgainstElimination(t *testing.T) {
+	defer runtime.GOMAXPROCS(runtime.GOMAXPROCS(3))
+	random := rand.New(rand.NewPCG(5, 8))
+	for _, size := range [][3]int{{1, 1, 1}, {64, 64, 64}, {70, 1100, 60}, {1100, 70, 60}, {300, 1030, 129}, {1500, 1500, 1500}} {
+		rows, columns, most := size[0], size[1], size[2]
+		// The product with a matrix of rank at most most.
+		m := newBitMatrix(rows, columns)
+		basis := make([][]uint64, most)
+		words := (columns + 63) / 64
+		for k := range basis {
+			basis[k] = make([]uint64, words)
+			for w := range basis[k] {
+				basis[k][w] = random.Uint64() & random.Uint64()
+			}
+			basis[k][words-1] &= 1<<((columns-1)%64)<<1 - 1
+		}
+		plain := make([][]uint64, rows)
+		for i := range plain {
+			plain[i] = make([]uint64, words)
+			for k := range basis {
+				if random.Uint64()&1 != 0 {
+					for w, x := range basis[k] {
+						plain[i][w] ^= x
+					}
+				}
+			}
+			for w, x := range plain[i] {
+				*m.word(i, w) = x
+			}
+		}
+		if err := m.reduce(context.Background()); err != nil {
+			t.Fatal(err)
+		}
+		// Gauß and Jordan: the reduced echelon form is unique but for the order
+		// of its rows.
+		rank := 0
+		for column := range columns {
+			bit := uint64(1) << (column % 64)
+			for i := rank; i < rows; i++ {
+				if plain[i][column/64]&bit == 0 {
+					continue
+				}
+				plain[i], plain[rank] = plain[rank], plain[i]
+				for j := range plain {
+					if j != rank && plain[j][column/64]&bit != 0 {
+						for w, x := range plain[rank] {
+							plain[j][w] ^= x
+						}
+					}
+				}
+				rank++
+				break
+			}
+		}
+		if m.rows != rank || len(m.pivots) != rank {
+			t.Errorf("%v: rank %d, want %d", size, m.rows, rank)
+			continue
+		}
+		places := make([]int, rank)
+		for i := range places {
+			places[i] = i
+		}
+		slices.SortFunc(places, func(i, j int) int { return m.pivots[i] - m.pivots[j] })
+		for k, i := range places {
+			for w, want := range plain[k] {
+				if have := *m.word(i, w); have != want {
+					t.Fatalf("%v: row %d, word %d: %x, want %x", size, k, w, have, want)
+				}
+			}
+		}
+		// Every row is orthogonal to every vector of the kernel.
+		kernel := m.kernel()
+		if kernel.rows != columns-rank {
+			t.Errorf("%v: kernel of %d, want %d", size, kernel.rows, columns-rank)
+		}
+		for k := range kernel.rows {
+			for i := range m.rows {
+				ones := 0
+				for w := range words {
+					ones += bits.OnesCount64(*kernel.word(k, w) & *m.word(i, w))
+				}
+				if ones%2 != 0 {
+					t.Fatalf("%v: row %d is not orthogonal to vector %d of the kernel", size, i, k)
+				}
+			}
+		}
+	}
+}
+
+// A dense matrix as large as the gap of a regular (3,6) code of a million bits.
+func BenchmarkReduce12000(b *testing.B) {
+	random := rand.New(rand.NewPCG(5, 9))
+	full := newBitMatrix(12000, 12000)
+	for i := range full.rows {
+		for w := range full.columns / 64 {
+			*full.word(i, w) = random.Uint64()
+		}
+	}
+	for b.Loop() {
+		b.StopTimer()
+		m := newBitMatrix(0, full.columns)
+		m.append(full)
+		b.StartTimer()
+		if err := m.reduce(context.Background()); err != nil {
+			b.Fatal(err)
+		}
+	}
+}
+
+func BenchmarkRank1000000(b *testing.B) {
+	g, err := Build(context.Background(), regular(3, 6, 1_000_000), Settings{Method: Randomized, Girth: 4})
+	if err != nil {
+		b.Fatal(err)
+	}
+	triangle := g.Triangulate()
+	for b.Loop() {
+		if _, err := triangle.Rank(context.Background()); err != nil {
 			b.Fatal(err)
 		}
 	}
