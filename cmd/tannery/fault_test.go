@@ -11,44 +11,121 @@ import (
 	"time"
 )
 
-// Products that are killed while they come about, by SIGKILL at random moments,
-// are there whole or not at all, and an older one stays as it was.
+// writers are commands that write a file named last, one of each way to write.
+var writers = []string{
+	"export ru01-r50-d3 --length 3000 -q -o product",
+	"build --lambda 3:1 --rho 6:1 --length 3000 -q -o product",
+	"search --channel bec --rate 0.5 --max-variable-degree 8 -q -o product",
+	"trace ru01-r50-d3 --channel bec --parameter 0.4 -q --plot product.svg",
+	"report ru01-r50-d3 --channel bec -q -o product.html",
+}
+
+// A product that is killed by SIGKILL while its file is being written is not
+// there at all, and an older one stays as it was. The matrix is one that takes
+// many writings; each kill waits until a random part of it is on disk.
 func TestKilledProductsAreWhole(t *testing.T) {
-	t.Setenv("SOURCE_DATE_EPOCH", "1796119200")
 	random := rand.New(rand.NewPCG(41, 42))
-	for _, line := range []string{
-		"export --lambda 2:0.3,3:0.7 --rho 6:1 --channel biawgn --length 3000 -q -o ",
-		"build --lambda 3:1 --rho 6:1 --length 4000 -q -o ",
-	} {
-		file := filepath.Join(t.TempDir(), "product")
-		start := time.Now()
-		cmd, stderr := process(t, strings.Fields(line+file)...)
-		if err := cmd.Run(); err != nil {
-			t.Fatalf("%v: %s", err, stderr)
+	folder := t.TempDir()
+	file := filepath.Join(folder, "product")
+	line := strings.Fields("build --lambda 3:1 --rho 6:1 --length 100000 --construction randomized --girth 4 -q -o " + file)
+	cmd, stderr := process(t, line...)
+	if err := cmd.Run(); err != nil {
+		t.Fatalf("%v: %s", err, stderr)
+	}
+	want, before := content(t, file), []byte("before\n")
+	const kills, tries = 8, 40
+	within := 0
+	for range tries {
+		if within == kills {
+			break
 		}
-		took := time.Since(start)
-		want := content(t, file)
-		before := []byte("before\n")
-		for range 12 {
-			if err := os.WriteFile(file, before, 0o600); err != nil {
+		if err := os.WriteFile(file, before, 0o600); err != nil {
+			t.Fatal(err)
+		}
+		for _, left := range temporaries(t, file) { // of the kill before
+			os.Remove(left)
+		}
+		cmd, stderr := process(t, line...)
+		if err := cmd.Start(); err != nil {
+			t.Fatal(err)
+		}
+		part := 1 + random.Int64N(int64(len(want)))
+		deadline := time.Now().Add(time.Minute)
+		for left := int64(-1); left < part && sizeOf(file) == int64(len(before)); left = halfWritten(t, file) {
+			if time.Now().After(deadline) {
+				t.Fatalf("nothing was written: %s", stderr)
+			}
+			time.Sleep(20 * time.Microsecond)
+		}
+		cmd.Process.Kill()
+		cmd.Wait()
+		switch got := content(t, file); {
+		case bytes.Equal(got, before) && halfWritten(t, file) >= part:
+			within++
+		case !bytes.Equal(got, before) && !bytes.Equal(got, want):
+			t.Fatalf("%d bytes, neither the old %d nor the new %d ones", len(got), len(before), len(want))
+		}
+	}
+	if within < kills {
+		t.Errorf("%d of %d kills came while the file was being written, want %d", within, tries, kills)
+	}
+	// What was left half-written goes with the next writing.
+	succeed(t, "", line...)
+	if left := names(t, folder); left != "product" || !bytes.Equal(content(t, file), want) {
+		t.Errorf("left behind: %s", left)
+	}
+}
+
+// sizeOf returns the size of a file, -1 without one.
+func sizeOf(file string) int64 {
+	info, err := os.Stat(file)
+	if err != nil {
+		return -1
+	}
+	return info.Size()
+}
+
+// halfWritten returns the size of the temporary file beside a target, -1
+// without one.
+func halfWritten(t *testing.T, file string) int64 {
+	t.Helper()
+	left := temporaries(t, file)
+	if len(left) == 0 {
+		return -1
+	}
+	return sizeOf(left[0])
+}
+
+func temporaries(t *testing.T, file string) []string {
+	t.Helper()
+	left, err := filepath.Glob(filepath.Join(filepath.Dir(file), "."+filepath.Base(file)+".*.tmp"))
+	if err != nil {
+		t.Fatal(err)
+	}
+	return left
+}
+
+// Writing never touches the content of an older file: it stays under a second
+// name that it has.
+func TestProductsAreNotWrittenInPlace(t *testing.T) {
+	for _, line := range writers {
+		t.Run(strings.Fields(line)[0], func(t *testing.T) {
+			folder := t.TempDir()
+			words := strings.Fields(line)
+			file := filepath.Join(folder, words[len(words)-1])
+			words[len(words)-1] = file
+			older := filepath.Join(folder, "older")
+			if err := os.WriteFile(file, []byte("before\n"), 0o600); err != nil {
 				t.Fatal(err)
 			}
-			cmd, _ := process(t, strings.Fields(line+file)...)
-			if err := cmd.Start(); err != nil {
-				t.Fatal(err)
+			if err := os.Link(file, older); err != nil {
+				t.Skip("no second names here: ", err)
 			}
-			time.Sleep(time.Duration(random.Int64N(int64(took) * 11 / 10)))
-			cmd.Process.Kill()
-			cmd.Wait()
-			if got := content(t, file); !bytes.Equal(got, before) && !bytes.Equal(got, want) {
-				t.Fatalf("%s: %d bytes, neither the old nor the new ones", line, len(got))
+			succeed(t, "", words...)
+			if got := string(content(t, older)); got != "before\n" || string(content(t, file)) == got {
+				t.Errorf("the older file holds %d bytes", len(got))
 			}
-		}
-		// What was left half-written goes with the next writing.
-		succeed(t, "", strings.Fields(line+file)...)
-		if left := names(t, filepath.Dir(file)); left != "product" {
-			t.Errorf("left behind: %s", left)
-		}
+		})
 	}
 }
 
@@ -58,13 +135,7 @@ func TestNoRoom(t *testing.T) {
 	if runtime.GOOS != "linux" {
 		t.Skip("the size of files is limited in the way of Linux")
 	}
-	for _, line := range []string{
-		"export ru01-r50-d3 --length 3000 -q -o product",
-		"build --lambda 3:1 --rho 6:1 --length 3000 -q -o product",
-		"search --channel bec --rate 0.5 --max-variable-degree 8 -q -o product",
-		"trace ru01-r50-d3 --channel bec --parameter 0.4 -q --plot product.svg",
-		"report ru01-r50-d3 --channel bec -q -o product.html",
-	} {
+	for _, line := range writers {
 		t.Run(strings.Fields(line)[0], func(t *testing.T) {
 			folder := t.TempDir()
 			words := strings.Fields(line)
