@@ -103,6 +103,14 @@ func runBuild(cmd *cobra.Command, args []string, o *buildOptions) error {
 	if err := o.realize(cmd.Context(), &p); err != nil {
 		return err
 	}
+	if lost := lostDegrees(p.Ensemble, *p.Realization); len(lost) > 0 {
+		warn(cmd, lost)
+		warnings = append(warnings, lost...)
+	}
+	twos := nodesOfDegreeTwo(*p.Realization)
+	if most := p.Realization.Checks - 1; o.degreeTwo.value == string(tanner.Chain) && twos > most {
+		return usagef("--degree-two: found chain, and %d variable nodes of degree 2; allowed: a chain of at most %d, one less than the check nodes, or forest or free", twos, most)
+	}
 	out, err := openProductOutput(cmd, o.output)
 	if err != nil {
 		return err
@@ -145,12 +153,25 @@ func runBuild(cmd *cobra.Command, args []string, o *buildOptions) error {
 		ProfileDigest: digest,
 		Warnings:      append([]string{}, warnings...),
 	}
+	if closing := g.DegreeTwoCycles(); closing > 0 && o.degreeTwo.value == string(tanner.Forest) {
+		answer.Warnings = append(answer.Warnings, fmt.Sprintf("no forest: %d of the %d variable nodes of degree 2 close cycles among themselves, which are codewords; up to %d, one less than the check nodes, can do without", closing, twos, p.Realization.Checks-1))
+		warn(cmd, answer.Warnings[len(warnings):])
+	}
 	if answer.Graph, err = o.measure(cmd, g, shown); err != nil {
 		return err
 	}
 	shown.finish()
 	label := tanner.Label{Title: p.Title, Profile: digest, Seed: strconv.FormatUint(o.seed.value, 10)}
 	return out.deliver(func(w io.Writer) error { return tanner.WriteMatrix(w, g, label) }, answer)
+}
+
+func nodesOfDegreeTwo(r ensembles.Realization) int {
+	for _, c := range r.VariableNodes {
+		if c.Degree == 2 {
+			return c.Nodes
+		}
+	}
+	return 0
 }
 
 // realize chooses the node counts if a length is asked for; else the profile

@@ -25,9 +25,12 @@ const checkpointInterval = time.Second
 // checkpointVersion is that of the form of checkpoints.
 const checkpointVersion = 1
 
+// measurementKind is the kind of the checkpoints of simulate.
+const measurementKind = "measurement"
+
 // checkpointFile is what a checkpoint holds, as one JSON object.
 type checkpointFile struct {
-	Kind    string          `json:"kind"` // "checkpoint"
+	Kind    string          `json:"kind"` // "checkpoint" or measurementKind
 	Version int             `json:"version"`
 	Program string          `json:"program"`
 	Brief   json.RawMessage `json:"brief"`  // what is searched for
@@ -148,7 +151,11 @@ func (c *checkpoint) decode(content []byte) ([]byte, error) {
 			err = errors.New("more after its end")
 		}
 	}
-	const allowed = "allowed: that of this search, another --checkpoint, or to remove the file and start anew"
+	other, this := "another brief or seed", "this search"
+	if c.head.Kind == measurementKind {
+		other, this = "another measurement: of another matrix, channel, values, iterations, schedule or seed", "this measurement"
+	}
+	allowed := "allowed: that of " + this + ", another --checkpoint, or to remove the file and start anew"
 	switch {
 	case err != nil || found.Kind != c.head.Kind:
 		return nil, usagef("%s: found no checkpoint, or a damaged one; %s", c.path, allowed)
@@ -158,7 +165,7 @@ func (c *checkpoint) decode(content []byte) ([]byte, error) {
 	case found.Digest != found.digest():
 		return nil, usagef("%s: found a damaged checkpoint, which does not match its digest; %s", c.path, allowed)
 	case !bytes.Equal(found.Brief, c.head.Brief):
-		return nil, usagef("%s: found the checkpoint of another brief or seed; %s", c.path, allowed)
+		return nil, usagef("%s: found the checkpoint of %s; %s", c.path, other, allowed)
 	}
 	// Keys twice or in capitals, which the decoder lets pass, were not written
 	// by this program either.

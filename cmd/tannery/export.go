@@ -83,6 +83,10 @@ func runExport(cmd *cobra.Command, args []string, o *exportOptions) error {
 	if err := context.Cause(cmd.Context()); err != nil {
 		return err
 	}
+	if lost := lostDegrees(p.Ensemble, r); len(lost) > 0 {
+		warn(cmd, lost)
+		warnings = append(warnings, lost...)
+	}
 	for _, m := range meters {
 		result, err := m.measure(cmd.Context(), r.Ensemble())
 		if err != nil {

@@ -29,7 +29,7 @@ const (
 // Set implements pflag.Value.
 func (o *rangeOption) Set(text string) error {
 	o.values = nil
-	wrong := fmt.Errorf("at most %d different numbers with commas between them, or FROM:TO:STEP; each %s", maxRange, o.allow)
+	wrong := fmt.Errorf("at most %d different numbers with commas between them, or FROM:TO:STEP with a STEP that leads from FROM to TO; each %s", maxRange, o.allow)
 	if parts := strings.Split(text, ":"); len(parts) == 3 {
 		var n [3]float64
 		for i, part := range parts {
@@ -57,7 +57,8 @@ func (o *rangeOption) Set(text string) error {
 		}
 	}
 	seen := map[float64]bool{}
-	for _, v := range o.values {
+	for i, v := range o.values {
+		o.values[i] = v + 0 // which makes 0 of -0
 		if !o.allow.Contains(v) || seen[v] || len(o.values) > maxRange {
 			return wrong
 		}

@@ -2,6 +2,7 @@ package main
 
 import (
 	"context"
+	"errors"
 	"fmt"
 
 	"github.com/spf13/cobra"
@@ -156,8 +157,11 @@ func runSimulate(cmd *cobra.Command, path string, o *simulateOptions) error {
 			return err
 		}
 	}
-	if interrupted {
+	switch {
+	case interrupted:
 		return context.Cause(cmd.Context())
+	case len(answer.Points) == 0:
+		return unreachedError{errors.New("--time: too short, no frame was finished in it; nothing is written")}
 	}
 	return nil
 }

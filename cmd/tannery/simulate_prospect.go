@@ -2,6 +2,8 @@ package main
 
 import (
 	"context"
+	"fmt"
+	"math"
 
 	"github.com/spf13/cobra"
 
@@ -48,6 +50,11 @@ func (o *simulateOptions) prospect(cmd *cobra.Command, path string, g *tanner.Gr
 	if err != nil {
 		return nil, nil, err
 	}
+	redundant, err := redundancy(cmd.Context(), g, answer.DesignRate)
+	if err != nil {
+		return nil, nil, err
+	}
+	answer.Warnings = append(answer.Warnings, redundant...)
 	threshold, failed := engine.Threshold(cmd.Context(), e, f)
 	if err := context.Cause(cmd.Context()); err != nil {
 		return nil, nil, err
@@ -79,8 +86,36 @@ func (o *simulateOptions) prospect(cmd *cobra.Command, path string, g *tanner.Gr
 	}
 	isolated := scaling.Isolated(answer.Length)
 	answer.Scaling = &report.SimulationScaling{Alpha: scaling.Alpha, Beta: scaling.Beta, Isolated: isolated}
-	if !isolated {
+	if !isolated || o.iterations.given { // the law is about decoding to the end
 		return answer, nil, nil
 	}
 	return answer, &scaling, nil
+}
+
+const (
+	// quickRankWork is the most work for the rank that is done before trials:
+	// some tenths of a second.
+	quickRankWork = 2e8
+	// rateSlackDB is by how much Eb/N0 may be wrong without a word, because
+	// some rows depend on others, as one does with even degrees only.
+	rateSlackDB = 0.01
+)
+
+// redundancy warns if so many rows depend on others that the code has another
+// rate than its matrix is designed for: Eb/N0 and the limits are at that.
+func redundancy(ctx context.Context, g *tanner.Graph, designRate float64) (warnings []string, err error) {
+	triangle := g.Triangulate()
+	if triangle.RankWork() > quickRankWork {
+		return nil, nil
+	}
+	rank, err := triangle.Rank(ctx)
+	if err != nil {
+		return nil, context.Cause(ctx)
+	}
+	rate := 1 - float64(rank)/float64(g.Variables())
+	if rank == g.Checks() || designRate > 0 && 10*math.Log10(rate/designRate) < rateSlackDB {
+		return nil, nil
+	}
+	return []string{fmt.Sprintf("the rank is %d, %d less than rows, so the rate of the code is %s; Eb/N0 and limits are at the design rate, %s",
+		rank, g.Checks()-rank, report.Trimmed(rate, 9), report.Trimmed(designRate, 9))}, nil
 }

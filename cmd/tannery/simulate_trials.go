@@ -3,6 +3,7 @@ package main
 import (
 	"encoding/json"
 	"fmt"
+	"runtime"
 	"slices"
 	"time"
 
@@ -43,7 +44,7 @@ func (o *simulateOptions) measure(cmd *cobra.Command, g *tanner.Graph, f channel
 	shown := newProgress(cmd.ErrOrStderr(), o.noProgress || quiet(cmd), 0)
 	defer shown.finish()
 	limits := montecarlo.Limits{
-		Frames: int64(o.frames.value), FrameErrors: int64(o.frameErrors.value), Workers: o.workers.value,
+		Frames: int64(o.frames.value), FrameErrors: int64(o.frameErrors.value), Workers: min(o.workers.value, runtime.NumCPU()), // more would only take memory
 	}
 	var last time.Time // of the state that was handed over
 	for i, value := range values {
@@ -54,9 +55,7 @@ func (o *simulateOptions) measure(cmd *cobra.Command, g *tanner.Graph, f channel
 		if o.time.value > 0 {
 			limits.Time = o.time.value - earlier
 			if limits.Time <= 0 { // spent before the interruption
-				if done[i].Counts.Frames > 0 {
-					answer.Points = append(answer.Points, o.point(done[i].Measurement, montecarlo.TimeUp, f, answer, scaling))
-				}
+				o.add(cmd, done[i].Measurement, montecarlo.TimeUp, f, value, answer, scaling)
 				continue
 			}
 		}
@@ -77,9 +76,7 @@ func (o *simulateOptions) measure(cmd *cobra.Command, g *tanner.Graph, f channel
 			return false, usagef("%s: %w", o.checkpoint, err)
 		}
 		keep()
-		if m.Counts.Frames > 0 {
-			answer.Points = append(answer.Points, o.point(m, status, f, answer, scaling))
-		}
+		o.add(cmd, m, status, f, value, answer, scaling)
 		if status == montecarlo.Interrupted {
 			return true, nil
 		}
@@ -102,7 +99,7 @@ func (o *simulateOptions) resume(cmd *cobra.Command, matrix string, values []flo
 	if err != nil {
 		return nil, nil, err
 	}
-	kept, state, err := openState(o.checkpoint, checkpointFile{Kind: "measurement", Version: checkpointVersion, Program: program, Brief: asked})
+	kept, state, err := openState(o.checkpoint, checkpointFile{Kind: measurementKind, Version: checkpointVersion, Program: program, Brief: asked})
 	if err != nil || state == nil {
 		return kept, done, err
 	}
@@ -114,6 +111,18 @@ func (o *simulateOptions) resume(cmd *cobra.Command, matrix string, values []flo
 		fmt.Fprintf(cmd.ErrOrStderr(), "tannery: continuing from %s\n", o.checkpoint)
 	}
 	return kept, done, nil
+}
+
+// add adds what was measured at one value to the answer, if there were trials.
+func (o *simulateOptions) add(cmd *cobra.Command, m montecarlo.Measurement, status montecarlo.Status, f channel.Family, value float64, answer *report.Simulation, scaling *montecarlo.Scaling) {
+	switch {
+	case m.Counts.Frames > 0:
+		answer.Points = append(answer.Points, o.point(m, status, f, answer, scaling))
+	case status == montecarlo.TimeUp:
+		missing := fmt.Sprintf("no frame was finished at %s = %g within --time", f.Symbol(), value)
+		answer.Warnings = append(answer.Warnings, missing)
+		warn(cmd, []string{missing})
+	}
 }
 
 // point is what was measured at one parameter.

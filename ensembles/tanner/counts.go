@@ -11,6 +11,11 @@ import (
 // ensemble and design rate. It is an error if a node has no edges or a check
 // node only one, as no profile has such nodes.
 func (g *Graph) Realization() (ensembles.Realization, error) {
+	for c := range g.Checks() {
+		if len(g.VariablesOf(c)) == 1 {
+			return ensembles.Realization{}, fmt.Errorf("found row %d with a single entry; allowed: at least 2 in every row, as a check of one bit makes it 0", c+1)
+		}
+	}
 	r := ensembles.Realization{
 		Length: g.Variables(), Checks: g.Checks(), Edges: g.Edges(),
 		VariableNodes: tally(g.varStart), CheckNodes: tally(g.checkStart),

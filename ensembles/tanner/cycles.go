@@ -10,9 +10,12 @@ import (
 // length, counted in neighbours visited, is bounded, per edge and in all,
 // because in an ensemble with large degrees the expected number of cycles of
 // length 2k, (λ'(1)ρ'(1))^k/2k, and the search behind each grow fast with k.
+// However long the graph is, cycles of lengths 4 and 6 can be sought from all
+// of its nodes where degrees are small, as with (3,6).
 const (
 	cycleTries       = 16
 	cycleWorkPerEdge = 1000
+	leastWorkPerEdge = 30
 	cycleWork        = 100_000_000
 )
 
@@ -26,7 +29,7 @@ func (s *sockets) removeCycles(ctx context.Context, girth int, random *rand.Rand
 	}
 	p := newProbe(s)
 	survey := newSurvey(s)
-	bound := min(cycleWork, cycleWorkPerEdge*len(s.mate))
+	bound := min(max(cycleWork, leastWorkPerEdge*len(s.mate)), cycleWorkPerEdge*len(s.mate))
 	for length := int32(4); length < int32(girth); length += 2 {
 		p.work = 0
 		for v := int32(0); v < s.frozen && p.work < bound; v++ {

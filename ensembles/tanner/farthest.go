@@ -26,10 +26,12 @@ type farsight struct {
 	variable, check *probe // the searches from either side
 	random          *rand.Rand
 	reach           int
+	// What the variable nodes of degree 2, which come first, have connected.
+	trees trees
 }
 
 func newFarsight(s *sockets, h *shelf, random *rand.Rand) *farsight {
-	return &farsight{s, h, newProbe(s), newProbe(s), random, max(leastReach, growthWork/max(1, len(s.mate)))}
+	return &farsight{s, h, newProbe(s), newProbe(s), random, max(leastReach, growthWork/max(1, len(s.mate))), newTrees(len(s.checkEnd))}
 }
 
 // farthest returns the check node with free sockets that is farthest from v,
@@ -71,7 +73,34 @@ func (f *farsight) farthest(v int32) int32 {
 	if unseen == 0 {
 		return best
 	}
+	if c := f.apart(v); c >= 0 {
+		return c
+	}
 	return f.sample(search)
+}
+
+// joined is told of every edge that is placed.
+func (f *farsight) joined(v int32) {
+	if ends := f.sockets.checksOf(v); f.pairs(v) && len(ends) == 2 {
+		f.trees.unite(ends[0], ends[1])
+	}
+}
+
+// pairs tells whether v is to have two edges.
+func (f *farsight) pairs(v int32) bool {
+	return f.sockets.varStart[v+1]-f.sockets.varStart[v] == 2
+}
+
+// apart returns a check node with free sockets that no path leads to from v,
+// by a random free socket where possible, for the second edge of a node of
+// degree 2; -1 if there is none. While these nodes are placed the graph is a
+// forest of them, in which no reach is needed to tell.
+func (f *farsight) apart(v int32) int32 {
+	if !f.pairs(v) || len(f.sockets.checksOf(v)) != 1 {
+		return -1
+	}
+	from := f.trees.root(f.sockets.checksOf(v)[0])
+	return f.draw(func(c int32) bool { return f.trees.root(c) != from })
 }
 
 // sample returns the farthest of growthCandidates check nodes that the search
@@ -81,7 +110,7 @@ func (f *farsight) farthest(v int32) int32 {
 func (f *farsight) sample(search int32) int32 {
 	best, most := int32(-1), -1
 	for range growthCandidates {
-		c := f.draw(search)
+		c := f.draw(func(c int32) bool { return f.variable.checkMark[c].search != search })
 		distance, clear := f.distance(c, search)
 		if clear {
 			return c
@@ -93,13 +122,12 @@ func (f *farsight) sample(search int32) int32 {
 	return best
 }
 
-// draw returns a random check node that the search has not met, by a random
-// free socket or, where most have been met, the next one on the shelf.
-func (f *farsight) draw(search int32) int32 {
+// draw returns a random check node that will do, by a random free socket or,
+// where most will not, the next one on the shelf; -1 if none does.
+func (f *farsight) draw(do func(c int32) bool) int32 {
 	h := f.shelf
-	met := func(c int32) bool { return f.variable.checkMark[c].search == search }
 	for range drawTries {
-		if c := h.draw(f.random); !met(c) {
+		if c := h.draw(f.random); do(c) {
 			return c
 		}
 	}
@@ -108,14 +136,14 @@ func (f *farsight) draw(search int32) int32 {
 		i := 0
 		for _, row := range h.rows {
 			for _, c := range row {
-				if (i >= start) != part && !met(c) {
+				if (i >= start) != part && do(c) {
 					return c
 				}
 				i++
 			}
 		}
 	}
-	panic("tanner: no check node beyond the search")
+	return -1
 }
 
 // distance returns how many steps from check node to check node lead from c

@@ -92,6 +92,22 @@ func (s *sockets) uproot(first, end int32) {
 	}
 }
 
+// DegreeTwoCycles returns how many variable nodes of degree 2 close a cycle
+// with such nodes before them: the number of independent cycles among them. It
+// is at least their number less that of the check nodes plus one.
+func (g *Graph) DegreeTwoCycles() (closing int) {
+	forest := newTrees(g.Checks())
+	for v := range g.Variables() {
+		if ends := g.ChecksOf(v); len(ends) == 2 {
+			if forest.root(ends[0]) == forest.root(ends[1]) {
+				closing++
+			}
+			forest.unite(ends[0], ends[1])
+		}
+	}
+	return closing
+}
+
 // trees are disjoint sets of check nodes (Galler & Fischer, Commun. ACM 7(5),
 // 1964), with halving of the paths.
 type trees []int32

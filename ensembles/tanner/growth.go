@@ -27,6 +27,7 @@ func (s *sockets) grow(ctx context.Context, random *rand.Rand, progress func(don
 			}
 			shelf.take(c)
 			s.join(v, c)
+			f.joined(v)
 		}
 		done += int(s.varStart[v+1] - s.varStart[v])
 		if v%64 == 0 {

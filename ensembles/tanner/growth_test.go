@@ -79,6 +79,7 @@ func TestGrowthGoesFarthest(t *testing.T) {
 				depths[most]++
 				shelf.take(c)
 				s.join(v, c)
+				f.joined(v)
 				edges = append(edges, Edge{v, c})
 			}
 		}

@@ -1,5 +1,7 @@
 package report
 
+import "fmt"
+
 // Graph is what was found out about the Tanner graph of a parity-check matrix.
 type Graph struct {
 	Length     int      `json:"length"` // variable nodes: columns
@@ -18,11 +20,11 @@ type Graph struct {
 
 // rows writes the graph for people.
 func (g *Graph) rows(t *Text) {
-	t.Row("size", "%d checks × %d code bits, %d ones", g.Checks, g.Length, g.Edges)
+	t.Row("size", "%s × %s, %s", counted(int64(g.Checks), "check"), counted(int64(g.Length), "code bit"), counted(int64(g.Edges), "one"))
 	if g.Girth == 0 {
 		t.Row("girth", "no cycles")
 	} else {
-		t.Row("girth", "%d, with %d cycles of that length", g.Girth, g.Cycles)
+		t.Row("girth", "%d, with %s of that length", g.Girth, counted(g.Cycles, "cycle"))
 		t.Row("per variable node", "%s of them on average, %d at most", Significant(g.CyclesMean, 3), g.CyclesMost)
 	}
 	switch {
@@ -34,4 +36,12 @@ func (g *Graph) rows(t *Text) {
 		t.Row("rank", "%d, %d less than rows; rate %s, designed %s", *g.Rank, g.Checks-*g.Rank, Trimmed(*g.Rate, 9), Trimmed(g.DesignRate, 9))
 	}
 	t.Row("encoding", "approximate triangle with a gap of %d", g.Gap)
+}
+
+// counted is a number with what is counted, in the plural unless there is one.
+func counted(n int64, what string) string {
+	if n != 1 {
+		what += "s"
+	}
+	return fmt.Sprintf("%d %s", n, what)
 }

@@ -18,7 +18,7 @@ func (s *Simulation) WriteText(w io.Writer) error {
 		t.Paragraph("%s", s.Title)
 	}
 	t.Heading("Measured on %s, %d code bits, %s", s.Channel, s.Length, s.Decoder)
-	predicted := s.Scaling != nil && s.Scaling.Isolated
+	predicted := len(s.Points) > 0 && s.Points[0].PredictedFrame != nil
 	frames, bits := s.header("iter", "frames", "wrong", "frame error rate"), s.header("", "bits", "wrong", "bit error rate")
 	if predicted {
 		frames, bits = append(frames, "by law"), append(bits, "by law")
@@ -44,6 +44,8 @@ func (s *Simulation) WriteText(w io.Writer) error {
 	case predicted || s.Channel != (channel.BEC{}).Name():
 	case s.Scaling == nil:
 		t.Paragraph("No scaling law beside it: no single critical point sets the threshold of this profile.")
+	case s.Scaling.Isolated:
+		t.Paragraph("No scaling law beside it: it is about decoding to the end, not in %d iterations at most.", s.Iterations)
 	default:
 		t.Paragraph("No scaling law beside it: at this length more than one critical point of the profile decides.")
 	}
