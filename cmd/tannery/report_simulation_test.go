@@ -42,6 +42,18 @@ func TestReportWithSimulationOfAnotherProfile(t *testing.T) {
 	}
 }
 
+// What was warned of when a curve was measured stands beside it.
+func TestReportKeepsWarningsOfSimulations(t *testing.T) {
+	file := filepath.Join(t.TempDir(), "rates.json")
+	text := strings.Replace(string(content(t, measured)), `"warnings": []`, `"warnings": ["the rank is <2>"]`, 1)
+	if err := os.WriteFile(file, []byte(text), 0o600); err != nil {
+		t.Fatal(err)
+	}
+	if page := succeed(t, "", "report", "ru01-r50-d3", "--channel", "bec", "--simulation", file, "--quiet"); !strings.Contains(page, "Note: the rank is &lt;2&gt;.") {
+		t.Error("no warning on the page")
+	}
+}
+
 func TestReportRefusesSimulations(t *testing.T) {
 	content, err := os.ReadFile(measured)
 	if err != nil {
@@ -55,6 +67,7 @@ func TestReportRefusesSimulations(t *testing.T) {
 		{`"confidence": 0.95`, `"confidence": 95`, "confidence: found 95; allowed: a number above 0 and below 1"},
 		{`"length": 2048`, `"length": 0`, "length: found 0; allowed: a whole number of at least 1"},
 		{`"frames": 9923`, `"frames": 0`, "points[0].frames: found 0; allowed: a whole number of at least 1"},
+		{`"frame_errors": 200`, `"frame_errors": 9924`, "points[0].frame_errors: found 9924; allowed: from 0 to 9923, its frames"},
 		{`"high": 0.023115648252363896`, `"high": 0.001`, "points[0].frame_error_rate: found"},
 	} {
 		bad := strings.Replace(string(content), c.old, c.new, 1)

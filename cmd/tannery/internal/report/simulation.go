@@ -245,6 +245,8 @@ func DecodeSimulation(name string, content []byte) (Simulation, error) {
 		}
 		if p.Frames < 1 {
 			refuse(fmt.Sprintf("points[%d].frames", i), p.Frames, "a whole number of at least 1")
+		} else if p.FrameErrors < 0 || p.FrameErrors > p.Frames {
+			refuse(fmt.Sprintf("points[%d].frame_errors", i), p.FrameErrors, fmt.Sprintf("from 0 to %d, its frames", p.Frames))
 		}
 		for _, r := range []struct {
 			key string
