@@ -9,8 +9,6 @@ import (
 	"fmt"
 	"math"
 	"slices"
-
-	"tannery/ensembles"
 )
 
 // journey is the state of a search: all that its continuation depends on, so
@@ -67,68 +65,6 @@ var phaseNames = map[phase]string{
 
 // phaseDone is the fraction of the work that is done before each phase.
 var phaseDone = map[phase]float64{refining: 0.05, dropping: 0.4, exchanging: 0.45, evolving: 0.55, settling: 0.63, freeing: 0.65, polishing: 0.75, arrived: 1}
-
-// restore reads what was written down.
-func (j *journey) restore(saved []byte, p Problem) error {
-	var old journey
-	if err := json.Unmarshal(saved, &old); err != nil {
-		return fmt.Errorf("%w: %v", ErrCheckpoint, err)
-	}
-	switch {
-	case old.Format != j.Format:
-		return fmt.Errorf("%w: format %d: must be %d", ErrCheckpoint, old.Format, j.Format)
-	case old.Problem != j.Problem:
-		return fmt.Errorf("%w: it belongs to another problem or seed", ErrCheckpoint)
-	case old.Phase < beginning || old.Phase > arrived || old.At < 0 || old.At > len(old.Points):
-		return fmt.Errorf("%w: phase %d, point %d of %d", ErrCheckpoint, old.Phase, old.At, len(old.Points))
-	case old.Phase > refining && old.Best == nil:
-		return fmt.Errorf("%w: no best ensemble in phase %d", ErrCheckpoint, old.Phase)
-	}
-	points := old.Points
-	if old.Best != nil {
-		points = append(slices.Clone(points), old.Best)
-	}
-	for _, at := range points {
-		if !at.whole(len(p.channels())) {
-			return fmt.Errorf("%w: it holds a point that no search wrote", ErrCheckpoint)
-		}
-	}
-	for _, v := range old.Population {
-		if len(v.Genes) != 2*p.Limits.DistinctDegrees {
-			return fmt.Errorf("%w: it holds an individual of %d genes: must be %d", ErrCheckpoint, len(v.Genes), 2*p.Limits.DistinctDegrees)
-		}
-	}
-	*j = old
-	return nil
-}
-
-// whole tells whether a point that was read can be worked on.
-func (at *point) whole(channels int) bool {
-	if at == nil || len(at.Degrees) == 0 || !(at.Radius > 0) {
-		return false
-	}
-	for _, list := range [][]float64{at.Guess, at.Distance, at.Thresholds} {
-		if list != nil && len(list) != channels {
-			return false
-		}
-	}
-	if (at.Guess == nil) != (at.Distance == nil) {
-		return false
-	}
-	lambda, err := ensembles.NewDistribution(at.Ensemble.Lambda...)
-	if err != nil {
-		return false
-	}
-	rho, err := ensembles.NewDistribution(at.Ensemble.Rho...)
-	if err != nil {
-		return false
-	}
-	_, err = ensembles.New(lambda, rho)
-	return err == nil
-}
-
-// ErrCheckpoint is wrapped by the errors that refuse a checkpoint.
-var ErrCheckpoint = errors.New("checkpoint cannot be resumed")
 
 // digest identifies a problem and a seed.
 func (p Problem) digest(seed uint64) string {

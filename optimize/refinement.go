@@ -233,7 +233,7 @@ func nearChecks(rho ensembles.Distribution, allowed []int, free bool) []int {
 		at, _ := slices.BinarySearch(allowed, t.Degree)
 		for _, n := range steps {
 			switch d := t.Degree + n; {
-			case allowed == nil && d >= 2:
+			case allowed == nil && d >= 2 && d <= ensembles.MaxDegree:
 				chosen = append(chosen, d)
 			case allowed != nil && at+n >= 0 && at+n < len(allowed):
 				chosen = append(chosen, allowed[at+n])

@@ -138,18 +138,21 @@ func (d deadlineYardstick) read(ctx context.Context, e ensembles.Ensemble, guess
 	high, low := guess, guess
 	atHigh := margin(guess)
 	atLow := atHigh
-	for step := distance; atHigh > 0 && high < limit; step *= 2 {
+	for step := distance; atHigh > 0 && high < limit && ctx.Err() == nil; step *= 2 {
 		low, atLow = high, atHigh
 		high = min(high+step, limit)
 		atHigh = margin(high)
 	}
-	for step := distance; atLow <= 0; step *= 2 {
+	for step := distance; atLow <= 0 && ctx.Err() == nil; step *= 2 {
 		if low-best < tolerance*limit {
 			return r, errNoTunnel
 		}
 		high, atHigh = low, atLow
 		low = max(low-step, best+(low-best)/4)
 		atLow = margin(low)
+	}
+	if err := ctx.Err(); err != nil {
+		return r, err
 	}
 	for side := 0; high-low > tolerance*limit && atHigh < 0; {
 		if err := ctx.Err(); err != nil {
