@@ -111,6 +111,11 @@ func runBuild(cmd *cobra.Command, args []string, o *buildOptions) error {
 	if most := p.Realization.Checks - 1; o.degreeTwo.value == string(tanner.Chain) && twos > most {
 		return usagef("--degree-two: found chain, and %d variable nodes of degree 2; allowed: a chain of at most %d, one less than the check nodes, or forest or free", twos, most)
 	}
+	if available, known := availableMemory(); known && p.Realization.Edges <= tanner.MaxEdges {
+		if err := fits(*p.Realization, available); err != nil {
+			return err
+		}
+	}
 	out, err := openProductOutput(cmd, o.output)
 	if err != nil {
 		return err
