@@ -1,7 +1,6 @@
 package main
 
 import (
-	"bytes"
 	"context"
 	"encoding/json"
 	"errors"
@@ -13,7 +12,6 @@ import (
 	"github.com/spf13/cobra"
 
 	"tannery/cmd/tannery/internal/brief"
-	"tannery/cmd/tannery/internal/report"
 	"tannery/optimize"
 )
 
@@ -22,12 +20,6 @@ type seriesCell struct {
 	name   string // of its profile's file, and in progress
 	brief  brief.Brief
 	beyond error // why no ensemble can meet the brief; nil if one may
-}
-
-// seriesRecord is a cell that is done, as the checkpoint keeps it.
-type seriesRecord struct {
-	Row     report.SeriesRow `json:"row"`
-	Profile string           `json:"profile"` // YAML; empty where nothing was found
 }
 
 // seriesOptions are the options of commands that do several searches, one
@@ -133,10 +125,8 @@ func (o *seriesOptions) resume(cmd *cobra.Command, command string, cells []serie
 	if err != nil || state == nil {
 		return kept, nil, err
 	}
-	var records []seriesRecord
-	decoder := json.NewDecoder(bytes.NewReader(state))
-	decoder.DisallowUnknownFields()
-	if err := decoder.Decode(&records); err != nil || len(records) > len(cells) {
+	records, err := recordsIn(state, cells)
+	if err != nil {
 		kept.close(false)
 		return nil, nil, usagef("%s: found a damaged checkpoint; allowed: that of this series, another --checkpoint, or to remove the file and start anew", o.checkpoint)
 	}
@@ -151,11 +141,7 @@ const unreachable = "unreachable"
 
 // one does one search. That nothing can be found is a row that says so.
 func (o *seriesOptions) one(cmd *cobra.Command, c seriesCell, i, n int) (seriesRecord, error) {
-	b := c.brief
-	row := report.SeriesRow{
-		Name: c.name, Channel: b.Channel, Rate: b.Rate, MaxVariableDegree: largestDegree(b),
-		MaxEdgesPerBit: b.EdgesPerBit, MaxIterations: b.Iterations, Symbol: b.Families[0].Symbol(),
-	}
+	b, row := c.brief, c.row()
 	if c.beyond != nil {
 		row.Status, row.Note = unreachable, c.beyond.Error()
 		return seriesRecord{Row: row}, nil
@@ -187,14 +173,9 @@ func (o *seriesOptions) one(cmd *cobra.Command, c seriesCell, i, n int) (seriesR
 	if err != nil {
 		return seriesRecord{}, err
 	}
-	found := p.Results[0]
 	row.Status = result.Status.String()
-	row.Threshold, row.Uncertainty, row.Limit = found.Threshold, found.Uncertainty, found.Limit
-	row.Gap = report.Gap{Parameter: found.Gap.Parameter, DB: found.Gap.DB, Rate: found.Gap.Rate}
-	row.Method, row.EdgesPerBit, row.DistinctDegrees = found.Method, result.Ensemble.EdgesPerBit(), len(result.Ensemble.Lambda)
-	row.Lambda, row.Rho = result.Ensemble.Lambda.String(), result.Ensemble.Rho.String()
 	text, err := p.Encode()
-	return seriesRecord{row, string(text)}, err
+	return seriesRecord{withProfile(row, p), string(text)}, err
 }
 
 func largestDegree(b brief.Brief) int {

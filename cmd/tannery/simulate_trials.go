@@ -4,7 +4,6 @@ import (
 	"encoding/json"
 	"fmt"
 	"runtime"
-	"slices"
 	"time"
 
 	"github.com/spf13/cobra"
@@ -25,7 +24,7 @@ type timed struct {
 // measure makes the trials at all values, and adds a point to the answer for
 // each at which there were any. It tells whether it was interrupted.
 func (o *simulateOptions) measure(cmd *cobra.Command, g *tanner.Graph, f channel.Family, values []float64, answer *report.Simulation, scaling *montecarlo.Scaling) (interrupted bool, err error) {
-	kept, done, err := o.resume(cmd, answer.Matrix, values)
+	kept, done, err := o.resume(cmd, g, f, values)
 	if err != nil {
 		return false, err
 	}
@@ -48,9 +47,7 @@ func (o *simulateOptions) measure(cmd *cobra.Command, g *tanner.Graph, f channel
 	}
 	var last time.Time // of the state that was handed over
 	for i, value := range values {
-		trials := montecarlo.Trials{
-			Graph: g, Family: f, Parameter: value, Iterations: o.iterations.value, Schedule: montecarlo.Schedule(o.schedule.value), Seed: o.seed.value,
-		}
+		trials := o.trials(g, f, value)
 		start, earlier := time.Now(), done[i].Spent
 		if o.time.value > 0 {
 			limits.Time = o.time.value - earlier
@@ -73,7 +70,7 @@ func (o *simulateOptions) measure(cmd *cobra.Command, g *tanner.Graph, f channel
 				fmt.Sprintf("%d of %d frames wrong", m.Counts.FrameErrors, m.Counts.Frames), 0)
 		})
 		if err != nil {
-			return false, usagef("%s: %w", o.checkpoint, err)
+			return false, invalid(err)
 		}
 		keep()
 		o.add(cmd, m, status, f, value, answer, scaling)
@@ -85,15 +82,25 @@ func (o *simulateOptions) measure(cmd *cobra.Command, g *tanner.Graph, f channel
 	return false, nil
 }
 
+// trials are those at one value.
+func (o *simulateOptions) trials(g *tanner.Graph, f channel.Family, value float64) montecarlo.Trials {
+	return montecarlo.Trials{
+		Graph: g, Family: f, Parameter: value, Iterations: o.iterations.value, Schedule: montecarlo.Schedule(o.schedule.value), Seed: o.seed.value,
+	}
+}
+
+// longestSpent is more time than anybody spends, and keeps sums from overflow.
+const longestSpent = 100 * 365 * 24 * time.Hour
+
 // resume opens the checkpoint, if there is one, and returns what is measured
 // at each value.
-func (o *simulateOptions) resume(cmd *cobra.Command, matrix string, values []float64) (*checkpoint, []timed, error) {
+func (o *simulateOptions) resume(cmd *cobra.Command, g *tanner.Graph, f channel.Family, values []float64) (*checkpoint, []timed, error) {
 	done := make([]timed, len(values))
 	if !cmd.Flags().Changed("checkpoint") {
 		return nil, done, nil
 	}
 	asked, err := json.Marshal(map[string]any{
-		"command": "simulate", "matrix": matrix, "channel": o.channel.value, "values": values,
+		"command": "simulate", "matrix": g.Digest(), "channel": o.channel.value, "values": values,
 		"iterations": o.iterations.value, "schedule": o.schedule.value, "seed": o.seed.value,
 	})
 	if err != nil {
@@ -103,7 +110,11 @@ func (o *simulateOptions) resume(cmd *cobra.Command, matrix string, values []flo
 	if err != nil || state == nil {
 		return kept, done, err
 	}
-	if err := json.Unmarshal(state, &done); err != nil || len(done) != len(values) || slices.ContainsFunc(done, func(t timed) bool { return t.Spent < 0 }) {
+	broken := json.Unmarshal(state, &done) != nil || len(done) != len(values)
+	for i := 0; i < len(values) && !broken; i++ {
+		broken = done[i].Spent < 0 || done[i].Spent > longestSpent || o.trials(g, f, values[i]).Continues(done[i].Measurement) != nil
+	}
+	if broken {
 		kept.close(false)
 		return nil, nil, usagef("%s: found a damaged checkpoint; allowed: that of this measurement, another --checkpoint, or to remove the file and start anew", o.checkpoint)
 	}

@@ -25,10 +25,15 @@ func (c *Counts) add(o outcome) {
 	}
 }
 
+// mostFrames is more than anybody measures, and keeps sums far from overflow.
+const mostFrames = 1 << 50
+
 // check returns an error unless trials of that length can give these counts.
 func (c Counts) check(length int) error {
 	n := int64(length)
 	switch {
+	case c.Frames > mostFrames:
+		return fmt.Errorf("frames %d: must be at most %d", c.Frames, int64(mostFrames))
 	case c.Frames < 0 || c.FrameErrors < 0 || c.FrameErrors > c.Frames:
 		return fmt.Errorf("frame_errors %d of %d frames: must be from 0 to the number of frames", c.FrameErrors, c.Frames)
 	case c.Undetected < 0 || c.Undetected > c.FrameErrors:
@@ -37,8 +42,8 @@ func (c Counts) check(length int) error {
 		return fmt.Errorf("bit_errors %d in %d erroneous frames: must be from 1 to %d in each", c.BitErrors, c.FrameErrors, n)
 	case c.BitErrorSquares < c.BitErrors || float64(c.BitErrorSquares) > float64(c.BitErrors)*float64(n):
 		return fmt.Errorf("bit_error_squares %d: must be from 1 to %d times the %d bit errors", c.BitErrorSquares, n, c.BitErrors)
-	case c.Iterations < 0:
-		return fmt.Errorf("iterations %d: must not be negative", c.Iterations)
+	case c.Iterations < 0 || c.Iterations > 0 && c.Frames == 0:
+		return fmt.Errorf("iterations %d of %d frames: must not be negative, and 0 without frames", c.Iterations, c.Frames)
 	}
 	return nil
 }

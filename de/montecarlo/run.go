@@ -108,6 +108,13 @@ func (t Trials) Run(ctx context.Context, from Measurement, limits Limits, record
 	}
 }
 
+// Continues returns an error unless Run takes the measurement to continue
+// from: one of the same settings, whose counts trials can give.
+func (t Trials) Continues(from Measurement) error {
+	_, err := t.begin(from)
+	return err
+}
+
 // begin returns the measurement to be continued.
 func (t *Trials) begin(from Measurement) (Measurement, error) {
 	erasures := isBEC(t.Family)
