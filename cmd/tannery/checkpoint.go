@@ -2,6 +2,7 @@ package main
 
 import (
 	"bytes"
+	"context"
 	"crypto/sha256"
 	"encoding/hex"
 	"encoding/json"
@@ -133,9 +134,9 @@ func (c *checkpoint) read() ([]byte, error) {
 	case !info.Mode().IsRegular():
 		return nil, usagef("--checkpoint %s: found what is no file; allowed: a file", c.path)
 	}
-	content, err := os.ReadFile(c.path)
+	content, _, err := readInput(context.Background(), c.path, nil)
 	if err != nil {
-		return nil, invalid(inputError(c.path, err))
+		return nil, err
 	}
 	return c.decode(content)
 }

@@ -151,6 +151,23 @@ func TestForeignStates(t *testing.T) {
 	}
 }
 
+// A checkpoint is read like any input: not beyond what memory is for.
+func TestLargeCheckpoint(t *testing.T) {
+	path := filepath.Join(t.TempDir(), "state")
+	if err := os.WriteFile(path, []byte("{"), 0o600); err != nil {
+		t.Fatal(err)
+	}
+	if err := os.Truncate(path, 1<<40); err != nil { // without taking up room
+		t.Skip(err)
+	}
+	for _, line := range append([]string{resumableSearch}, resumed...) {
+		code, stdout, stderr := command(t, tinyMatrix, append(strings.Fields(line), "--checkpoint", path)...)
+		if code != exitUsage || stdout != "" || stderr != "tannery: "+path+": larger than 67108864 bytes, the most that is read\n" {
+			t.Errorf("tannery %s: code %d, stdout %q, stderr %q", line, code, stdout, stderr)
+		}
+	}
+}
+
 // FuzzStates continues from states of any content; those of searches are
 // those of FuzzRestore in optimize.
 func FuzzStates(f *testing.F) {
