@@ -2,7 +2,6 @@ package main
 
 import (
 	"flag"
-	"io/fs"
 	"os"
 	"path/filepath"
 	"regexp"
@@ -106,36 +105,6 @@ func TestReadme(t *testing.T) {
 		t.Skip("where products and sums are rounded together, a search ends in another profile that is as good")
 	}
 	compare(t, "../../README.md", true)
-}
-
-// TestDocumentedTestsExist looks for every test and benchmark that the
-// documentation names as its witness.
-func TestDocumentedTestsExist(t *testing.T) {
-	sources := map[string]bool{}
-	err := filepath.WalkDir("../..", func(path string, entry fs.DirEntry, err error) error {
-		if err != nil || !strings.HasSuffix(path, "_test.go") {
-			return err
-		}
-		content, err := os.ReadFile(path)
-		for _, match := range regexp.MustCompile(`(?m)^func ((?:Test|Benchmark|Fuzz)\w+)\(`).FindAllSubmatch(content, -1) {
-			sources[string(match[1])] = true
-		}
-		return err
-	})
-	if err != nil {
-		t.Fatal(err)
-	}
-	for _, file := range []string{"README.md", "DEVELOPERS.md"} {
-		content, err := os.ReadFile("../../" + file)
-		if err != nil {
-			t.Fatal(err)
-		}
-		for _, name := range regexp.MustCompile(`\b(?:Test|Benchmark|Fuzz)[A-Z]\w+`).FindAllString(string(content), -1) {
-			if !sources[name] {
-				t.Errorf("%s names %s, which is not there", file, name)
-			}
-		}
-	}
 }
 
 // TestGolden does the same for the answers kept in testdata/golden.
