@@ -14,8 +14,9 @@ const (
 	// the necks to be found from there.
 	roughTolerance = 1e-3
 	// nearEnough is how near the threshold, relative to it, the last run must
-	// have come, so that no tunnel that closes before it is overlooked.
-	nearEnough = 5e-3
+	// have come, so that no tunnel that closes before it is overlooked: some
+	// show only a few thousandths before they close.
+	nearEnough = 1.5e-3
 	// watched is how far ahead tunnels are looked at, in distances from the
 	// last run to the threshold.
 	watched = 2

@@ -30,9 +30,9 @@ const (
 	// points in its parabola, strideError that of those on the way there;
 	// strideTries is how often a stride is shortened that does not settle, and
 	// neckTries how often the parabola is moved.
-	neckError     = 1e-9
+	neckError     = 3e-9
 	noisyError    = noiseLevel
-	neckTolerance = 1e-10
+	neckTolerance = 3e-10
 	strideError   = 1e-7
 	strideTries   = 3
 	neckTries     = 6

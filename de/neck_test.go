@@ -95,7 +95,7 @@ func TestNeckAgreesWithRuns(t *testing.T) {
 	families := []channel.Family{channel.BIAWGN{}, channel.BSC{}, channel.Laplace{}, channel.Rayleigh{}}
 	for i := range 16 {
 		e, f := varied(r), families[i%len(families)]
-		runs, err := onGrid(e, f, 128, tolerance)
+		runs, err := onGrid(e, f, grid(t, 128), tolerance)
 		if err != nil {
 			t.Fatal(err)
 		}

@@ -34,7 +34,7 @@ func ExampleEvolution() {
 	fmt.Printf("decision on a bit: %.6f\n", v.DecisionError())
 	// Output:
 	// 0: error probability 0.08320, entropy 0.31232, B 0.42916
-	// 1: error probability 0.05781, entropy 0.22041, B 0.31664
+	// 1: error probability 0.05782, entropy 0.22041, B 0.31664
 	// 2: error probability 0.04249, entropy 0.16341, B 0.24362
 	// 3: error probability 0.03047, entropy 0.11819, B 0.18319
 	// 4: error probability 0.02003, entropy 0.07865, B 0.12777

@@ -168,8 +168,26 @@ func varied(r *rand.Rand) ensembles.Ensemble {
 	}
 }
 
-// The threshold by runs on a grid four to eight times as fine lies within the
-// uncertainty, for random ensembles on all channels.
+// large draws ensembles with variable degrees to 8000 and check degrees to
+// 500, in which thousands of messages add up that say almost nothing.
+func large(r *rand.Rand) ensembles.Ensemble {
+	for {
+		var terms []ensembles.Term
+		last := 1
+		for range 1 + r.IntN(12) {
+			if last += 1 + int(math.Exp(r.Float64()*math.Log(800))); last <= 8000 {
+				terms = append(terms, ensembles.Term{Degree: last, Fraction: r.ExpFloat64()})
+			}
+		}
+		e := ensembles.Ensemble{Lambda: ensembles.Normalize(terms), Rho: ensembles.Concentrated(3 + math.Exp(r.Float64()*math.Log(500)))}
+		if e.DesignRate() > .03 && e.DesignRate() < .995 {
+			return e
+		}
+	}
+}
+
+// The threshold by runs on a grid that is finer, and reaches further, lies
+// within the uncertainty, for random ensembles on all channels.
 func TestThresholdUncertainty(t *testing.T) {
 	const finePoints, fineTolerance = 1024, 2e-8
 	families := []channel.Family{channel.BIAWGN{}, channel.BSC{}, channel.Laplace{}, channel.Rayleigh{}}
@@ -180,8 +198,11 @@ func TestThresholdUncertainty(t *testing.T) {
 	}
 	for i := range count {
 		e, f := varied(r), families[i%len(families)]
+		if i%3 == 0 {
+			e = large(r)
+		}
 		got := quantizedThreshold(t, e, f)
-		fine, err := onGrid(e, f, finePoints, fineTolerance)
+		fine, err := onGrid(e, f, longGrid(t, finePoints), fineTolerance)
 		if err != nil {
 			t.Fatal(err)
 		}
@@ -195,7 +216,8 @@ func TestThresholdUncertainty(t *testing.T) {
 }
 
 // Cases in which predictions of the threshold agree long before they are right,
-// and in which another of several tunnels closes first on a finer grid.
+// in which another of several tunnels closes first on a finer grid or close to
+// the threshold, and in which what wraps around at check nodes adds up.
 func TestThresholdUncertaintyTraps(t *testing.T) {
 	rsu, ok := catalog.Lookup("rsu01-r50-d11")
 	if !ok {
@@ -211,9 +233,17 @@ func TestThresholdUncertaintyTraps(t *testing.T) {
 			Rho:    distribution(t, "49:.55693,50:.44307"),
 		}, channel.BSC{}},
 		{"tunnels that change places", rsu.Ensemble, channel.BIAWGN{}},
+		{"a tunnel that shows late", ensembles.Ensemble{
+			Lambda: distribution(t, "3:.19535,150:.03339,204:.00434,627:.25842,629:.5085"),
+			Rho:    distribution(t, "100:.80244,101:.19756"),
+		}, channel.Laplace{}},
+		{"many messages that say almost nothing", ensembles.Ensemble{
+			Lambda: distribution(t, "60:.5,400:.5"),
+			Rho:    distribution(t, "9000:1"),
+		}, channel.BSC{}},
 	} {
 		got := quantizedThreshold(t, c.e, c.f)
-		fine, err := onGrid(c.e, c.f, 1024, 1e-8)
+		fine, err := onGrid(c.e, c.f, longGrid(t, 1024), 1e-8)
 		if err != nil {
 			t.Fatal(err)
 		}
@@ -223,18 +253,25 @@ func TestThresholdUncertaintyTraps(t *testing.T) {
 	}
 }
 
-// onGrid returns the threshold on one grid by runs alone.
-func onGrid(e ensembles.Ensemble, f channel.Family, points int, tolerance float64) (float64, error) {
-	g, err := density.NewGrid(points)
+// longGrid returns a grid that reaches twice as far as those of thresholds, with
+// more levels and damping.
+func longGrid(t testing.TB, points int) *density.Grid {
+	t.Helper()
+	g, err := density.NewLongGrid(points)
 	if err != nil {
-		return 0, err
+		t.Fatal(err)
 	}
+	return g
+}
+
+// onGrid returns the threshold on one grid by runs alone.
+func onGrid(e ensembles.Ensemble, f channel.Family, g *density.Grid, tolerance float64) (float64, error) {
 	a := approach{e: e, f: f, grid: g, decoded: deep}
 	ctx := context.Background()
 	if why, err := a.bracket(ctx); err != nil || why != "" || a.high <= a.low {
 		return a.high, err
 	}
-	err = a.find(ctx, a.estimate, a.start(), tolerance*a.estimate/2)
+	err := a.find(ctx, a.estimate, a.start(), tolerance*a.estimate/2)
 	return a.estimate, err
 }
 
@@ -300,7 +337,7 @@ func TestQuantizedTwoTunnels(t *testing.T) {
 	for _, share := range []float64{low - 1e-3, low, high, high + 1e-3} {
 		e := twoTunnels(t, 60, share)
 		got := where(share)
-		fine, err := onGrid(e, f, 1024, 2e-8)
+		fine, err := onGrid(e, f, longGrid(t, 2048), 2e-8)
 		if err != nil {
 			t.Fatal(err)
 		}
@@ -399,7 +436,7 @@ func TestQuantizedMeasuredErasure(t *testing.T) {
 
 func TestQuantizedTolerance(t *testing.T) {
 	e, f := ensembles.Regular(5, 10), channel.BIAWGN{}
-	fine, err := onGrid(e, f, 1024, 1e-9)
+	fine, err := onGrid(e, f, longGrid(t, 2048), 1e-9)
 	if err != nil {
 		t.Fatal(err)
 	}

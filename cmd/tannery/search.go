@@ -55,9 +55,9 @@ need quantized.
 
 The report goes to standard output, and the profile to the file of -o. With -o -
 the profile goes to standard output and the report to standard error. A search
-that is interrupted or out of --time or --evaluations writes the best found. If
-a link of the brief cannot be served by the best found, it is written and the
-exit code is 3.
+that is interrupted or out of --time or --evaluations writes the best found,
+whose last measurement takes some seconds more. If a link of the brief cannot be
+served by the best found, it is written and the exit code is 3.
 
 With -o FILE, a search by quantized keeps its state in FILE.checkpoint (or in
 the file of --checkpoint): the same command continues there after an

@@ -56,24 +56,16 @@ func (c *CheckNode) Apply(dst, src *Density) {
 			known = dot(v.keep, c.cells)
 		}
 	}
-	// Erased is what the coarsest level does not know, and it is at least
-	// what comes of the erased messages: exactly so without the rounding
-	// that undamping brings.
-	erased := 1 - c.polynomial.at(1-src.even[0])
-	if lost := 1 - known - erased; math.Abs(lost) > roundingLoss {
-		erased += lost
-	}
-	dst.even[0] += erased
+	// Erased is what the coarsest level does not know. What rounding under the
+	// damping adds to the least magnitudes it takes away here, which are as
+	// good as erased.
+	dst.even[0] += 1 - known
 	dst.settle()
 }
 
 // negligible is the mass below which a level is left out. Its messages, all
 // of them reliable, then count as certain.
 const negligible = 1e-13
-
-// roundingLoss is the largest mass that rounding under the damping factor may
-// lose, or add, on the coarsest level; that little does not count as erased.
-const roundingLoss = 1e-9
 
 // complexView reads a real sequence of even length as one of half as many
 // complex values, real and imaginary parts in turn.

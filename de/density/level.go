@@ -17,11 +17,16 @@ type level struct {
 // The shares of a level's range.
 const (
 	// A level hands over to the next coarser one gradually between these
-	// fractions of its range. The rest at the end is spoilt: the centred
-	// stencil of a mass in the first cell reaches to node -1, and sums of
-	// such nodes wrap around to the last cells.
-	handoverFrom = 0.35
-	handoverTo   = 0.92
+	// fractions of its range: late enough for cells to be fine there, and
+	// early enough for rounding, which grows with u, to be small, and for
+	// the end, which is spoilt, to be far. The centred stencil of a mass in
+	// the first cell reaches to nodes -1 and -2, and sums of such nodes wrap
+	// around to the last cells.
+	handoverFrom = 0.2
+	handoverTo   = 0.7
+	// cutOff is the fraction of the coarsest level's range from which on
+	// messages count as erased.
+	cutOff = 0.92
 	// spoiltFrom is where cells count as wrapped around from below zero.
 	spoiltFrom = 0.96
 	// rootCells is below how many cells of the finest level √u is the
@@ -58,7 +63,7 @@ func newLevel(g *Grid, index int, top float64) *level {
 		share := handover(u / top)
 		if index == 0 {
 			share = 1
-			if u > handoverTo*top {
+			if u > cutOff*top {
 				share = 0
 			}
 		}
@@ -82,7 +87,7 @@ func newLevel(g *Grid, index int, top float64) *level {
 		v.keep = make([]float64, size)
 		for j := range v.keep {
 			switch t := float64(j) / float64(size); {
-			case t <= handoverTo:
+			case t <= cutOff:
 				v.keep[j] = undamp(j)
 			case t >= spoiltFrom:
 				v.keep[j] = undamp(j - size)
@@ -100,7 +105,7 @@ func placeU(t float64, finest bool) stencil {
 		share := (math.Sqrt(t) - low) / (high - low)
 		return stencil{int32(k), [order]float64{1 - share, share}}
 	}
-	return stencil{int32(k) - 1, lagrange(t-k, centred)}
+	return stencil{int32(k) - order/2 + 1, lagrange(t-k, centred)}
 }
 
 // handover is the share of a result at the fraction t of a level's range that
@@ -129,10 +134,9 @@ func (v *level) spread(cells []float64, g []float64, infinite float64) {
 		s := &v.in[k]
 		m := nodes[k]
 		if s.first < 0 {
-			cells[len(cells)-1] += m * s.weight[0]
-			cells[0] += m * s.weight[1]
-			cells[1] += m * s.weight[2]
-			cells[2] += m * s.weight[3]
+			for i, w := range s.weight {
+				cells[(int(s.first)+i+len(cells))%len(cells)] += m * w
+			}
 			continue
 		}
 		c := cells[s.first:][:order]
@@ -140,6 +144,8 @@ func (v *level) spread(cells []float64, g []float64, infinite float64) {
 		c[1] += m * s.weight[1]
 		c[2] += m * s.weight[2]
 		c[3] += m * s.weight[3]
+		c[4] += m * s.weight[4]
+		c[5] += m * s.weight[5]
 	}
 }
 
@@ -155,5 +161,7 @@ func (v *level) collect(g []float64, cells []float64) {
 		c[1] += m * s.weight[1]
 		c[2] += m * s.weight[2]
 		c[3] += m * s.weight[3]
+		c[4] += m * s.weight[4]
+		c[5] += m * s.weight[5]
 	}
 }

@@ -60,13 +60,7 @@ func (p *plainStep) check(dst, src *Density) {
 			known = dot(v.keep, p.cells)
 		}
 	}
-	erased := 1.0
-	for _, t := range p.rho {
-		erased -= t.Fraction * math.Pow(1-src.even[0], float64(t.Degree-1))
-	}
-	if lost := 1 - known - erased; math.Abs(lost) > roundingLoss {
-		erased += lost
-	}
+	erased := 1 - known
 	dst.even[0] += erased
 	dst.settle()
 }
