@@ -122,7 +122,7 @@ func ParseDistribution(text string) (Distribution, error) {
 			return nil, err
 		}
 		f, err := strconv.ParseFloat(strings.TrimSpace(fraction), 64)
-		if err != nil {
+		if err != nil || strings.ContainsAny(fraction, "_xX") { // which Go knows in numbers
 			return nil, fmt.Errorf("fraction %q of degree %d: must be a number from 0 to 1", strings.TrimSpace(fraction), n)
 		}
 		terms = append(terms, Term{n, f})

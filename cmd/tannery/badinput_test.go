@@ -84,6 +84,11 @@ func TestBadInput(t *testing.T) {
 		{"empty value", "limit --channel bec --rate=", "", `--rate: found ""; allowed: a number above 0 and below 1`},
 		{"no value", "limit --channel bec --rate", "", "--rate: needs a value"},
 		{"text for a number", "limit --channel bec --rate half", "", `--rate: found "half"; allowed: a number above 0 and below 1`},
+		{"a number in base 16", "limit --channel bec --rate 0x1p-1", "", `--rate: found "0x1p-1"; allowed: a number above 0 and below 1`},
+		{"a number with underscores", "limit --channel bec --parameter 0_0.5", "", `--parameter: found "0_0.5"; allowed: a number of at least 0`},
+		{"a fraction with underscores", "threshold --channel bec --lambda 3:1_0e-1 --rho 6:1", "", `--lambda: fraction "1_0e-1" of degree 3: must be a number from 0 to 1`},
+		{"trials at a number in base 16", "simulate BUOYS --channel bec --parameter 0.1,0x1p-2", "",
+			`--parameter: found "0.1,0x1p-2"; allowed: at most 1000 different numbers with commas between them, or FROM:TO:STEP with a STEP that leads from FROM to TO; each a number of at least 0`},
 		{"length as a fraction", "export --lambda 3:1 --rho 6:1 --length 10.5", "", `--length: found "10.5"; allowed: a whole number from 2 to 1000000000`},
 		{"ratio on the wrong channel", "limit --channel bsc --es-n0 1", "", "--es-n0: does not fit channel bsc; allowed: --parameter, its p"},
 		{"ratio without a rate", "limit --channel biawgn --eb-n0 1", "", "--eb-n0: needs a rate above 0, because Eb = Es/rate; allowed: --rate beside it, or --es-n0"},
@@ -329,5 +334,19 @@ func TestUnwritableOutputIsFoundFirst(t *testing.T) {
 	}
 	if entries, _ := os.ReadDir(folder); len(entries) != 0 {
 		t.Errorf("left behind: %v", entries)
+	}
+}
+
+// A time of the environment that is none is refused before any work; without
+// one, or with an empty one, the clock is asked.
+func TestBadEpoch(t *testing.T) {
+	line := strings.Fields("export ru01-r50-d3 --length 100 -q")
+	for text, ok := range map[string]bool{"": true, "0": true, "253402300799": true, "253402300800": false, "-1": false, "now": false, "1.5": false, "99999999999999999999": false} {
+		t.Setenv("SOURCE_DATE_EPOCH", text)
+		code, stdout, stderr := command(t, "", line...)
+		want := "tannery: SOURCE_DATE_EPOCH: found \"" + text + "\"; allowed: a whole number of seconds from 0 to 253402300799\n"
+		if ok && code != exitDone || !ok && (code != exitUsage || stdout != "" || stderr != want) {
+			t.Errorf("%q: code %d, stdout %q, stderr %q", text, code, stdout, stderr)
+		}
 	}
 }

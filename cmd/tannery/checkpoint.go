@@ -26,12 +26,24 @@ const checkpointInterval = time.Second
 // checkpointVersion is that of the form of checkpoints.
 const checkpointVersion = 1
 
-// measurementKind is the kind of the checkpoints of simulate.
-const measurementKind = "measurement"
+// The kinds of checkpoints: of search, of sweep and tradeoff, and of simulate.
+const (
+	searchKind      = "checkpoint"
+	seriesKind      = "series"
+	measurementKind = "measurement"
+)
+
+// checkpointKinds says for each kind what is continued from it, and what
+// another one of the kind belongs to.
+var checkpointKinds = map[string]struct{ name, other string }{
+	searchKind:      {"search", "another brief or seed"},
+	seriesKind:      {"series", "another series: of other searches, or in another order"},
+	measurementKind: {"measurement", "another measurement: of another matrix, channel, values, iterations, schedule or seed"},
+}
 
 // checkpointFile is what a checkpoint holds, as one JSON object.
 type checkpointFile struct {
-	Kind    string          `json:"kind"` // "checkpoint" or measurementKind
+	Kind    string          `json:"kind"` // one of checkpointKinds
 	Version int             `json:"version"`
 	Program string          `json:"program"`
 	Brief   json.RawMessage `json:"brief"`  // what is searched for
@@ -120,7 +132,7 @@ func checkpointHead(b brief.Brief, m optimize.Method) (checkpointFile, error) {
 		return checkpointFile{}, err
 	}
 	compact, err := json.Marshal(json.RawMessage(text)) // as it will be read back
-	return checkpointFile{Kind: "checkpoint", Version: checkpointVersion, Program: program, Brief: compact}, err
+	return checkpointFile{Kind: searchKind, Version: checkpointVersion, Program: program, Brief: compact}, err
 }
 
 // read returns the state in the file, nil if there is no file.
@@ -152,13 +164,13 @@ func (c *checkpoint) decode(content []byte) ([]byte, error) {
 			err = errors.New("more after its end")
 		}
 	}
-	other, this := "another brief or seed", "this search"
-	if c.head.Kind == measurementKind {
-		other, this = "another measurement: of another matrix, channel, values, iterations, schedule or seed", "this measurement"
-	}
-	allowed := "allowed: that of " + this + ", another --checkpoint, or to remove the file and start anew"
+	other, this := checkpointKinds[c.head.Kind].other, checkpointKinds[c.head.Kind].name
+	allowed := "allowed: that of this " + this + ", another --checkpoint, or to remove the file and start anew"
+	foreign, known := checkpointKinds[found.Kind]
 	switch {
-	case err != nil || found.Kind != c.head.Kind:
+	case err == nil && known && found.Kind != c.head.Kind:
+		return nil, usagef("%s: found the checkpoint of a %s; %s", c.path, foreign.name, allowed)
+	case err != nil || !known:
 		return nil, usagef("%s: found no checkpoint, or a damaged one; %s", c.path, allowed)
 	case found.Version != c.head.Version || found.Program != c.head.Program:
 		return nil, usagef("%s: found the checkpoint of %s, version %d; allowed: that of %s, version %d, another --checkpoint, or to remove the file and start anew",

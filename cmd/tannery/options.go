@@ -28,7 +28,7 @@ type numberOption struct {
 }
 
 func (o *numberOption) Set(text string) error {
-	v, err := strconv.ParseFloat(text, 64)
+	v, err := document.ParseFloat(text)
 	if err != nil || !o.allow.Contains(v) {
 		return errors.New(o.allow.String())
 	}

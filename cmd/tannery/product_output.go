@@ -14,11 +14,27 @@ import (
 // program is what wrote a profile, for its provenance.
 const program = "tannery " + version
 
-// now is the time written into profiles, in whole seconds. The environment
-// variable SOURCE_DATE_EPOCH (reproducible-builds.org) fixes it, so that the
-// same work gives the same file.
+// epochVariable is the variable of the environment that fixes the time written
+// into profiles (reproducible-builds.org), so that the same work gives the same
+// file.
+const epochVariable = "SOURCE_DATE_EPOCH"
+
+// lastEpoch is the last second that profiles can hold, that of the year 9999.
+const lastEpoch = 253402300799
+
+// checkEpoch refuses a value of epochVariable that is no time, as its
+// specification wants.
+func checkEpoch() error {
+	text, set := os.LookupEnv(epochVariable)
+	if seconds, err := strconv.ParseInt(text, 10, 64); set && text != "" && (err != nil || seconds < 0 || seconds > lastEpoch) {
+		return usagef("%s: found %q; allowed: a whole number of seconds from 0 to %d", epochVariable, text, int64(lastEpoch))
+	}
+	return nil
+}
+
+// now is the time written into profiles, in whole seconds.
 func now() time.Time {
-	if seconds, err := strconv.ParseInt(os.Getenv("SOURCE_DATE_EPOCH"), 10, 64); err == nil {
+	if seconds, err := strconv.ParseInt(os.Getenv(epochVariable), 10, 64); err == nil {
 		return time.Unix(seconds, 0).UTC()
 	}
 	return time.Now().UTC().Truncate(time.Second)

@@ -33,7 +33,7 @@ func (o *rangeOption) Set(text string) error {
 	if parts := strings.Split(text, ":"); len(parts) == 3 {
 		var n [3]float64
 		for i, part := range parts {
-			v, err := strconv.ParseFloat(part, 64)
+			v, err := document.ParseFloat(part)
 			if err != nil || math.IsNaN(v) || math.IsInf(v, 0) {
 				return wrong
 			}
@@ -49,7 +49,7 @@ func (o *rangeOption) Set(text string) error {
 		}
 	} else {
 		for part := range strings.SplitSeq(text, ",") {
-			v, err := strconv.ParseFloat(strings.TrimSpace(part), 64)
+			v, err := document.ParseFloat(strings.TrimSpace(part))
 			if err != nil {
 				return wrong
 			}

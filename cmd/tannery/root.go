@@ -49,7 +49,12 @@ tannery export link.yaml --length 64800 -o link-64800.yaml`,
 			}
 			return usagef("%s: unknown command%s; tannery --help lists them", args[0], suggestion(args[0], names))
 		},
-		PersistentPreRunE: refuseSameFile,
+		PersistentPreRunE: func(cmd *cobra.Command, args []string) error {
+			if err := checkEpoch(); err != nil {
+				return err
+			}
+			return refuseSameFile(cmd, args)
+		},
 		RunE: func(cmd *cobra.Command, _ []string) error {
 			printWelcome(cmd)
 			return nil

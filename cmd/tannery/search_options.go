@@ -34,6 +34,7 @@ type searchOptions struct {
 	output            string
 	checkpoint        string
 	noProgress        bool
+	renamed           map[string]string // options that stand for those of search, for messages
 }
 
 func newSearchOptions() *searchOptions {
@@ -85,7 +86,7 @@ func (o *searchOptions) brief(cmd *cobra.Command, args []string) (brief.Brief, e
 	if err := exclusive(cmd, "max-variable-degree", "variable-degrees"); err != nil {
 		return brief.Brief{}, err
 	}
-	given := brief.Channels{Names: o.channels.values, Degradation: o.degradation.value, Find: o.reader.find}
+	given := brief.Channels{Names: o.channels.values, Degradation: o.degradation.value, Find: o.reader.find, Renamed: o.renamed}
 	var draft *brief.Draft
 	if len(args) > 0 {
 		content, name, err := readInput(cmd.Context(), args[0], cmd.InOrStdin())

@@ -10,6 +10,7 @@ import (
 	"time"
 
 	"github.com/spf13/cobra"
+	"github.com/spf13/pflag"
 
 	"tannery/cmd/tannery/internal/brief"
 	"tannery/optimize"
@@ -49,6 +50,9 @@ func (o *seriesOptions) check(cmd *cobra.Command, args []string, varied ...strin
 	if o.csv && asJSON(cmd) {
 		return usagef("--csv and --json: only one of the two")
 	}
+	if cmd.Flags().Changed("profiles") && o.profiles == "" {
+		return usagef("--profiles \"\": must be the name of a folder")
+	}
 	if len(args) > 0 && args[0] == "-" {
 		return usagef("-: found standard input; allowed: a file, because the brief is read for each search")
 	}
@@ -58,6 +62,17 @@ func (o *seriesOptions) check(cmd *cobra.Command, args []string, varied ...strin
 		}
 	}
 	return nil
+}
+
+// vary sets an option of search to one item of the list that the series takes
+// by an option of its own.
+func (o *seriesOptions) vary(cmd *cobra.Command, option, item, list string) error {
+	err := cmd.Flags().Set(option, item)
+	var refused *pflag.InvalidValueError
+	if errors.As(err, &refused) {
+		return usagef("--%s: found %q; allowed: in a list with commas, %w", list, item, refused.Unwrap())
+	}
+	return err
 }
 
 // search does the cells that the checkpoint does not have yet, and returns the
@@ -121,7 +136,7 @@ func (o *seriesOptions) resume(cmd *cobra.Command, command string, cells []serie
 	if err != nil {
 		return nil, nil, err
 	}
-	kept, state, err := openState(o.checkpoint, checkpointFile{Kind: "series", Version: checkpointVersion, Program: program, Brief: asked})
+	kept, state, err := openState(o.checkpoint, checkpointFile{Kind: seriesKind, Version: checkpointVersion, Program: program, Brief: asked})
 	if err != nil || state == nil {
 		return kept, nil, err
 	}

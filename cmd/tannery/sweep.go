@@ -101,6 +101,10 @@ func (o *seriesOptions) deliver(cmd *cobra.Command, answer *report.Series, plot 
 
 // cells makes a brief for each combination, by setting the options of search.
 func (o *sweepOptions) cells(cmd *cobra.Command, args []string) ([]seriesCell, error) {
+	o.renamed = map[string]string{"--channel": "--channels", "--rate": "--rates", "--max-variable-degree": "--max-variable-degrees"}
+	if err := exclusive(cmd, "max-variable-degrees", "variable-degrees"); err != nil {
+		return nil, err
+	}
 	var cells []seriesCell
 	for _, c := range o.channelList.orOnce() {
 		for _, rate := range o.rates.orOnce() {
@@ -110,8 +114,8 @@ func (o *sweepOptions) cells(cmd *cobra.Command, args []string) ([]seriesCell, e
 					if set[1] == "" {
 						continue
 					}
-					if err := cmd.Flags().Set(set[0], set[1]); err != nil {
-						return nil, usagef("--%s: found %q; allowed: a list of what search takes as --%s", set[2], set[1], set[0])
+					if err := o.vary(cmd, set[0], set[1], set[2]); err != nil {
+						return nil, err
 					}
 				}
 				b, err := o.brief(cmd, args)

@@ -120,19 +120,25 @@ func TestForeignSweepCheckpoint(t *testing.T) {
 
 func TestBadSeries(t *testing.T) {
 	for args, want := range map[string]string{
-		"sweep --channels bec --rates x":                    `--rates: found "x"; allowed: a list of what search takes as --rate`,
+		"sweep --channels bec --rates x":                    `--rates: found "x"; allowed: in a list with commas, a number above 0 and below 1`,
 		"sweep --channels bec --rates 0.5,0.5":              "bec-r0.5-d15: found twice; allowed: each channel, rate and degree once",
 		"sweep --channels bec --rates 0.5 --rate 0.4":       "--rate: found in tannery sweep; allowed: what tannery sweep --help lists",
 		"sweep --channels bec --rates 0.5 --csv --json":     "--csv and --json: only one of the two",
 		"sweep --channels bec --rates 0.5,0.6 --plot x.svg": "--plot: a picture shows one channel and one rate",
 		"sweep -":                           "-: found standard input; allowed: a file, because the brief is read for each search",
 		"tradeoff --channel bec --rate 0.5": "--at: missing; allowed: a list of limits, such as 2.8,3,3.2 edges per bit or 10,20,40 iterations",
-		"tradeoff --channel bec --rate 0.5 --at 3,-1":                        `--at: found "-1"; allowed: what search takes as --max-edges-per-bit`,
-		"tradeoff --channel bec --rate 0.5 --at 3,3.0":                       "--at: found 3 twice; allowed: each limit once",
-		"tradeoff --channel bec --rate 0.5 --at 3 --max-edges-per-bit 3":     "--max-edges-per-bit: found in tannery tradeoff; allowed: what tannery tradeoff --help lists",
-		"tradeoff --channel bec --rate 0.5 --at 1.5 --against iterations":    `--at: found "1.5"; allowed: what search takes as --max-iterations`,
-		"tradeoff --channel bec --rate 0.5 --at 3 --against time":            "--against",
-		"sweep --channels bec --rates 0.5 --max-variable-degrees 5,,8 --csv": "--max-variable-degrees",
+		"tradeoff --channel bec --rate 0.5 --at 3,-1":                     `--at: found "-1"; allowed: in a list with commas, a number of at least 1`,
+		"tradeoff --channel bec --rate 0.5 --at 3,3.0":                    "--at: found 3 twice; allowed: each limit once",
+		"tradeoff --channel bec --rate 0.5 --at 3 --max-edges-per-bit 3":  "--max-edges-per-bit: found in tannery tradeoff; allowed: what tannery tradeoff --help lists",
+		"tradeoff --channel bec --rate 0.5 --at 1.5 --against iterations": `--at: found "1.5"; allowed: in a list with commas, a whole number from 1 to 1000000`,
+		"sweep": "--channels: missing; allowed: bec, bsc, biawgn, laplace, rayleigh, or a file with . or / in its name\ntannery: --rates: missing; allowed: a number above 0 and below 1\n",
+		"sweep ../../testdata/briefs/harbour.yaml --channels biawgn --max-variable-degrees 3,0": `--max-variable-degrees: found "0"; allowed: in a list with commas, a whole number from 2 to 1000000`,
+		"sweep --channels bec --rates 0.5 --max-variable-degrees 3 --variable-degrees 3":        "--max-variable-degrees and --variable-degrees: only one of the two",
+		"sweep --channels bec --rates 0.5 --profiles=":                                          `--profiles "": must be the name of a folder`,
+		"sweep --channels bec,bce --rates 0.5":                                                  `--channels: found "bce"; allowed: in a list with commas, bec, bsc, biawgn, laplace, rayleigh, or a file with . or / in its name; did you mean bec?`,
+		"tradeoff --channel bec --rate 0.5 --at 3,1.5":                                          "--at: found 1.5; allowed: at least 2, the least variable degree",
+		"tradeoff --channel bec --rate 0.5 --at 3 --against time":                               "--against",
+		"sweep --channels bec --rates 0.5 --max-variable-degrees 5,,8 --csv":                    "--max-variable-degrees",
 	} {
 		code, stdout, stderr := command(t, "", strings.Fields(args)...)
 		if code != exitUsage || stdout != "" || !strings.Contains(stderr, want) {

@@ -63,10 +63,11 @@ func runTradeoff(cmd *cobra.Command, args []string, o *tradeoffOptions) error {
 	if err := o.check(cmd, args, varied); err != nil {
 		return err
 	}
+	o.renamed = map[string]string{"--" + varied: "--at"}
 	var cells []seriesCell
 	for _, limit := range o.at {
-		if err := cmd.Flags().Set(varied, limit); err != nil {
-			return usagef("--at: found %q; allowed: what search takes as --%s", limit, varied)
+		if err := o.vary(cmd, varied, limit, "at"); err != nil {
+			return err
 		}
 		b, err := o.brief(cmd, args)
 		if err != nil {

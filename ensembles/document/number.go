@@ -64,7 +64,7 @@ func (v Value) Float(r Range) float64 {
 	if !ok {
 		return 0
 	}
-	x, err := parseFloat(text)
+	x, err := ParseFloat(text)
 	if err != nil || !r.Contains(x) {
 		v.refuse(r.String())
 		return 0
@@ -72,10 +72,11 @@ func (v Value) Float(r Range) float64 {
 	return x
 }
 
-// parseFloat accepts the numbers of JSON, and also a sign of plus and a
+// ParseFloat accepts the numbers of JSON, and also a sign of plus and a
 // point without digits on one of its sides, as YAML does. Underscores, other
-// bases, leading zeros and the names of infinity are refused.
-func parseFloat(text string) (float64, error) {
+// bases, leading zeros and the names of infinity are refused. The range is that
+// of float64.
+func ParseFloat(text string) (float64, error) {
 	digits := strings.TrimLeft(text, "+-")
 	if strings.Trim(text, "0123456789+-.eE") != "" || len(digits) > 1 && digits[0] == '0' && digits[1] >= '0' && digits[1] <= '9' {
 		return 0, strconv.ErrSyntax

@@ -166,7 +166,7 @@ func writeJSONScalar(b *bytes.Buffer, n *yaml.Node) {
 			b.WriteString(text)
 			return
 		}
-		if x, err := parseFloat(text); err == nil {
+		if x, err := ParseFloat(text); err == nil {
 			b.WriteString(strconv.FormatFloat(x, 'g', -1, 64))
 			return
 		}

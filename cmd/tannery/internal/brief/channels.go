@@ -35,6 +35,9 @@ type Channels struct {
 	Names       []string
 	Degradation string
 	Find        Finder
+	// Renamed are the options by which a command takes what search takes by
+	// another, such as "--rate": "--rates", for messages.
+	Renamed map[string]string
 }
 
 // IsFile tells whether a channel is a file: it has a point or a slash in its
@@ -80,6 +83,7 @@ func decodeChannels(v document.Value) (names []string) {
 
 // take notes the channels and finds their families.
 func (d *Draft) take(c Channels, file []string) {
+	d.renamed = c.Renamed
 	if len(c.Names) > 0 {
 		file = c.Names
 		d.Overridden("channel", "--channel")

@@ -21,6 +21,7 @@ type Draft struct {
 	doc      *document.Document // nil without a file
 	file     map[string]document.Value
 	options  map[string]string // key: the option that gave its value
+	renamed  map[string]string // see Channels
 	problems []error
 }
 
@@ -33,7 +34,15 @@ func New(given Channels) *Draft {
 
 // Overridden notes that the value of a key, by its dotted path, was given by
 // an option, which wins over the file.
-func (d *Draft) Overridden(key, option string) { d.options[key] = option }
+func (d *Draft) Overridden(key, option string) { d.options[key] = d.called(option) }
+
+// called is the option by which the user gives what an option of search does.
+func (d *Draft) called(option string) string {
+	if name, ok := d.renamed[option]; ok {
+		return name
+	}
+	return option
+}
 
 // refuse reports the value of a key where it was given.
 func (d *Draft) refuse(key, found, allowed string) {
@@ -51,6 +60,7 @@ func (d *Draft) refuse(key, found, allowed string) {
 // missing reports that neither the file nor an option gives a value.
 // A value that is there but wrong was reported when it was read.
 func (d *Draft) missing(key, option, allowed string) {
+	option = d.called(option)
 	value, ok := d.file[key]
 	switch {
 	case ok && !value.Present():
