@@ -44,6 +44,16 @@ func TestBadInput(t *testing.T) {
 			"none.yaml: cannot be read: no such file or directory"},
 		{"no name", "threshold rsu01-r50-d16 --channel bec", "",
 			"rsu01-r50-d16: neither a file nor a name of the catalogue; nearest: rsu01-r50-d10, rsu01-r50-d11, rsu01-r50-d12, rsu01-r50-d15; tannery catalog lists them"},
+		{"a name that steers terminals", "threshold a\x1b[2Jb.yaml --channel bec", "",
+			`a\x1b[2Jb.yaml: cannot be read: no such file or directory`},
+		{"a title that steers terminals", threshold, "title: \"a\\e[31mb\"\n" + profileText,
+			`standard input:1:8: title: found "a\x1b[31mb"; allowed: text without control characters`},
+		{"a key that steers terminals", threshold, profileText + "\"\\e[2J\": 1\n",
+			`standard input:5:1: \x1b[2J: found an unknown key; allowed: kind, version, title, lambda, rho, design_rate, results, provenance, realization`},
+		{"help about two", "help limit foo", "",
+			`"foo": unexpected; help takes one command`},
+		{"help about nothing known", "help limt", "",
+			"limt: unknown command; did you mean limit?; tannery --help lists them"},
 		{"nothing like a name", "threshold harbour --channel bec", "",
 			"harbour: neither a file nor a name of the catalogue; tannery catalog lists them"},
 		{"a folder", "threshold . --channel bec", "",
@@ -348,5 +358,35 @@ func TestBadEpoch(t *testing.T) {
 		if ok && code != exitDone || !ok && (code != exitUsage || stdout != "" || stderr != want) {
 			t.Errorf("%q: code %d, stdout %q, stderr %q", text, code, stdout, stderr)
 		}
+	}
+}
+
+// Names that are empty are shown as such.
+func TestEmptyNames(t *testing.T) {
+	for want, args := range map[string][]string{
+		`"": unknown command; tannery --help lists them`:                            {""},
+		`" limit": unknown command; did you mean limit?; tannery --help lists them`: {" limit"},
+		`folder "": must be the name of a folder that exists`:                       {"man", ""},
+		`file name "": must be a file, or - for standard input`:                     {"threshold", "", "--channel", "bec"},
+		`--output "": must be a file name, or - for standard output`:                {"export", "ru01-r50-d3", "--length", "100", "-o", ""},
+	} {
+		code, stdout, stderr := command(t, "", args...)
+		if code != exitUsage || stdout != "" || stderr != "tannery: "+want+"\n" {
+			t.Errorf("tannery %q: code %d, stdout %q, stderr %q; want %s", args, code, stdout, stderr, want)
+		}
+	}
+}
+
+// Whatever bytes the title of a matrix has, what is shown and written of it is
+// text.
+func TestTitleOfAnyBytes(t *testing.T) {
+	matrix := strings.Replace(tinyMatrix, "\n", "\n% title: K\xfcste\x1b[31m \u0085 \x00red\n", 1)
+	const title = "K\ufffdste [31m red"
+	if profile := succeed(t, matrix, "profile", "-", "-o", "-", "-q"); !strings.Contains(profile, "title: "+title+"\n") && !strings.Contains(profile, "title: '"+title+"'\n") {
+		t.Errorf("profile:\n%s", profile)
+	}
+	answer := succeed(t, matrix, strings.Fields("simulate - --channel bec --parameter 0.3 --frames 2 -q")...)
+	if !strings.HasPrefix(answer, title+"\n") {
+		t.Errorf("simulate:\n%q", answer)
 	}
 }

@@ -33,6 +33,9 @@ func runMan(cmd *cobra.Command, args []string) error {
 	if len(args) == 0 {
 		return usagef("folder: missing; allowed: a folder for the manual pages")
 	}
+	if args[0] == "" {
+		return usagef("folder \"\": must be the name of a folder that exists")
+	}
 	if info, err := os.Stat(args[0]); err != nil || !info.IsDir() {
 		return usagef("%s: found no folder; allowed: a folder that exists", args[0])
 	}

@@ -69,7 +69,7 @@ func warn(cmd *cobra.Command, warnings []string) {
 }
 
 func printWarning(w io.Writer, text string) {
-	fmt.Fprintf(w, "tannery: warning: %s\n", text)
+	fmt.Fprintf(w, "tannery: warning: %s\n", visible(text))
 }
 
 // profileFiles completes the argument of a command that takes one brief.

@@ -1,6 +1,9 @@
 package main
 
 import (
+	"strconv"
+	"strings"
+
 	"github.com/spf13/cobra"
 )
 
@@ -47,7 +50,11 @@ tannery export link.yaml --length 64800 -o link-64800.yaml`,
 					names = append(names, c.Name())
 				}
 			}
-			return usagef("%s: unknown command%s; tannery --help lists them", args[0], suggestion(args[0], names))
+			name := args[0]
+			if strings.TrimSpace(name) != name || name == "" {
+				name = strconv.Quote(name)
+			}
+			return usagef("%s: unknown command%s; tannery --help lists them", name, suggestion(args[0], names))
 		},
 		PersistentPreRunE: func(cmd *cobra.Command, args []string) error {
 			if err := checkEpoch(); err != nil {
@@ -101,8 +108,11 @@ func dressCompletion(c *cobra.Command) {
 // helpOf prints the help of the command named by args.
 func helpOf(cmd *cobra.Command, args []string) error {
 	target, rest, err := cmd.Root().Find(args)
-	if err != nil || len(rest) > 0 {
+	switch {
+	case err != nil || target == cmd.Root() && len(rest) > 0:
 		return cmd.Root().Args(cmd.Root(), args)
+	case len(rest) > 0:
+		return usagef("%q: unexpected; help takes one command", rest[0])
 	}
 	target.InitDefaultHelpFlag()
 	printHelp(target, nil)

@@ -105,18 +105,26 @@ func (v Value) plain(allowed string) (text string, ok bool) {
 }
 
 // String returns free text. Any scalar is text, quoted or not, but for an
-// empty one without quotes.
+// empty one without quotes. Control characters other than tabs and ends of
+// lines, which quotes can spell, would steer the terminal that shows the text.
 func (v Value) String() string {
 	const allowed = "text"
 	if !v.expect(yaml.ScalarNode, allowed) {
 		return ""
 	}
-	if v.node.Tag == "!!null" {
+	switch {
+	case v.node.Tag == "!!null":
 		v.refuse(allowed)
+		return ""
+	case strings.ContainsFunc(v.node.Value, steers):
+		v.refuse("text without control characters")
 		return ""
 	}
 	return v.node.Value
 }
+
+// steers tells whether a character of a text is one that a terminal obeys.
+func steers(r rune) bool { return unicode.IsControl(r) && !strings.ContainsRune("\t\r\n", r) }
 
 // Word returns text without spaces or control characters, such as a name.
 func (v Value) Word() string {

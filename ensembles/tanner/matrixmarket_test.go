@@ -153,6 +153,7 @@ func TestReadMatrixReportsReaderErrors(t *testing.T) {
 // What is read is a valid graph, and writing and reading gives it again.
 func FuzzReadMatrix(f *testing.F) {
 	f.Add([]byte(banner + "\n% title: a\n2 3 4\n1 1\n2 2\n1 3\n2 3\n"))
+	f.Add([]byte("\ufeff" + banner + "\n% title: K\xfcste \x1b[2J\n1 1 1\n1 1\n"))
 	f.Add([]byte(banner + "\r\n\r\n1 1 1\r\n1 1\r\n"))
 	f.Add([]byte("%%MatrixMarket matrix coordinate pattern symmetric\n3 3 4\n1 1\n2 1\n3 2\n3 3\n"))
 	f.Add([]byte("%%MatrixMarket matrix coordinate integer symmetric\n2 2 2\n2 1 1\n2 2 1\n"))

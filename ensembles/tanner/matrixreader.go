@@ -8,6 +8,7 @@ import (
 	"io"
 	"slices"
 	"strings"
+	"unicode"
 )
 
 // maxLine is the longest line kept; the format allows 1024 characters.
@@ -52,6 +53,7 @@ func (m *matrixReader) read() error {
 	if err != nil {
 		return m.ended(err, "it must begin with "+banner)
 	}
+	text = bytes.TrimPrefix(text, []byte("\ufeff")) // some editors' mark of UTF-8
 	if m.format, err = parseBanner(text); err != nil {
 		return err
 	}
@@ -126,12 +128,20 @@ func (m *matrixReader) nextData() ([]byte, error) {
 	}
 }
 
-// readComment keeps the parts of a label, the first of each key.
+// readComment keeps the parts of a label, the first of each key. Comments are
+// anybody's text: what is not UTF-8 is replaced, and control characters, which
+// would steer the terminal that shows it, become spaces.
 func (m *matrixReader) readComment(text []byte) {
 	key, value, _ := strings.Cut(string(text), ":")
 	for _, p := range m.label.parts() {
 		if strings.TrimSpace(key) == p.key && *p.value == "" {
-			*p.value = strings.Join(strings.Fields(value), " ")
+			spaced := strings.Map(func(r rune) rune {
+				if unicode.IsControl(r) {
+					return ' '
+				}
+				return r
+			}, strings.ToValidUTF8(value, "\ufffd"))
+			*p.value = strings.Join(strings.Fields(spaced), " ")
 		}
 	}
 }
