@@ -25,7 +25,7 @@ var _ Engine = QuantizedEngine{}
 
 const (
 	// DefaultTolerance is the relative uncertainty of QuantizedEngine.
-	DefaultTolerance = 2e-6
+	DefaultTolerance = 1e-6
 	// coarsestPoints and finestPoints are the numbers of points of the first
 	// and the last grid tried.
 	coarsestPoints = 128

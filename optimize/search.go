@@ -10,9 +10,13 @@ import (
 	"tannery/ensembles"
 )
 
+// ErrSpent is returned by Search when nothing was found in the evaluations
+// allowed.
+var ErrSpent = errors.New("nothing was found in the evaluations allowed")
+
 // Search looks for the best ensemble. When ctx ends, or a limit of the
 // settings is reached, it returns the best found so far, and Result.Status
-// tells; if nothing was found until then, the error is that of ctx.
+// tells; if nothing was found until then, the error is that of ctx, or ErrSpent.
 func Search(ctx context.Context, problem Problem, settings Settings) (Result, error) {
 	p, err := problem.sorted()
 	if err != nil {
@@ -42,6 +46,9 @@ func Search(ctx context.Context, problem Problem, settings Settings) (Result, er
 	if r.best == nil {
 		if err == nil {
 			err = ctx.Err()
+		}
+		if err == nil && r.spent() {
+			err = ErrSpent
 		}
 		if err == nil {
 			err = fmt.Errorf("rate %v: %w", p.Rate, ErrUnreachable)

@@ -367,3 +367,11 @@ func ExampleSearch() {
 	// certificate: <nil>
 	// binding: [variable degrees]
 }
+
+// A search that may not even make its first ensembles says so.
+func TestSearchSpent(t *testing.T) {
+	p := Problem{Channel: channel.BIAWGN{}, Rate: 0.5, VariableDegrees: DegreesUpTo(8), Limits: Limits{DistinctDegrees: 3, Iterations: 20}}
+	if _, err := Search(context.Background(), p, Settings{Evaluations: 1}); !errors.Is(err, ErrSpent) {
+		t.Errorf("%v; want %v", err, ErrSpent)
+	}
+}

@@ -232,6 +232,8 @@ func searchError(ctx context.Context, err error, kept *checkpoint) error {
 		return usagef("%s: %w; allowed: that of this search, another --checkpoint, or to remove the file and start anew", kept.path, err)
 	case ctx.Err() != nil:
 		return fmt.Errorf("%w before anything was found; nothing is written", context.Cause(ctx))
+	case errors.Is(err, optimize.ErrSpent):
+		return unreachedError{errors.New("--evaluations: too few, nothing was found in them; nothing is written")}
 	case errors.Is(err, context.DeadlineExceeded):
 		return unreachedError{errors.New("--time: too short, nothing was found in it; nothing is written")}
 	case errors.Is(err, optimize.ErrUnsupported):
