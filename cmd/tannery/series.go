@@ -89,7 +89,7 @@ func (o *seriesOptions) search(cmd *cobra.Command, command string, cells []serie
 			warn(cmd, []string{failed.Error()})
 		}
 	}()
-	if err := o.folder(); err != nil {
+	if err := o.folder(cmd, cells); err != nil {
 		return nil, err
 	}
 	for i := range cells {
@@ -198,15 +198,33 @@ func largestDegree(b brief.Brief) int {
 	return v[len(v)-1]
 }
 
-// folder makes the folder for the profiles, if one is asked for.
-func (o *seriesOptions) folder() error {
+// folder makes the folder for the profiles, if one is asked for, and finds out
+// whether they can be written there and are no files that the command line
+// names.
+func (o *seriesOptions) folder(cmd *cobra.Command, cells []seriesCell) error {
 	if o.profiles == "" {
 		return nil
 	}
 	if err := os.MkdirAll(o.profiles, 0o777); err != nil {
 		return outputError("--profiles", o.profiles, err)
 	}
+	for _, c := range cells {
+		path := o.profileOf(c)
+		for _, named := range append(cmd.Flags().Args(), o.checkpoint) {
+			if sameFile(path, named) {
+				return usagef("--profiles %s: found %s, which is read or written for something else; allowed: another folder", o.profiles, path)
+			}
+		}
+		if _, err := openOutput("--profiles", path); err != nil {
+			return err
+		}
+	}
 	return nil
+}
+
+// profileOf is the file for the profile of a cell.
+func (o *seriesOptions) profileOf(c seriesCell) string {
+	return filepath.Join(o.profiles, c.name+".yaml")
 }
 
 // store writes a cell's profile into the folder.
@@ -214,7 +232,7 @@ func (o *seriesOptions) store(c seriesCell, r seriesRecord) error {
 	if o.profiles == "" || r.Profile == "" {
 		return nil
 	}
-	out, err := openOutput("--profiles", filepath.Join(o.profiles, c.name+".yaml"))
+	out, err := openOutput("--profiles", o.profileOf(c))
 	if err != nil {
 		return err
 	}

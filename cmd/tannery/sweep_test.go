@@ -164,3 +164,31 @@ func TestTradeoffIsMonotone(t *testing.T) {
 		}
 	}
 }
+
+// A folder in which the profiles cannot be written is found out before the
+// searches, as is one in which they would replace a file of the command line.
+func TestProfilesThatCannotBeWritten(t *testing.T) {
+	folder := t.TempDir()
+	brief := filepath.Join(folder, "bec-r0.5-d5.yaml")
+	const text = "kind: brief\nversion: 1\nchannel: bec\nrate: 0.5\n"
+	if err := os.WriteFile(brief, []byte(text), 0o600); err != nil {
+		t.Fatal(err)
+	}
+	if err := os.Mkdir(filepath.Join(folder, "bec-r0.5-d9.yaml"), 0o700); err != nil {
+		t.Fatal(err)
+	}
+	for args, want := range map[string]string{
+		"sweep --channels bec --rates 0.5 --max-variable-degrees 4,9 --profiles " + folder: "--profiles " + folder + "/bec-r0.5-d9.yaml: cannot be written: is a directory",
+		"sweep " + brief + " --max-variable-degrees 4,5 --profiles " + folder:              "--profiles " + folder + ": found " + brief + ", which is read or written for something else; allowed: another folder",
+		"sweep --channels bec --rates 0.5 --max-variable-degrees 4,6 --profiles " + folder + " --checkpoint " + folder + "/./bec-r0.5-d6.yaml": "--profiles " + folder + ": found " +
+			folder + "/bec-r0.5-d6.yaml, which is read or written for something else; allowed: another folder",
+	} {
+		code, stdout, stderr := command(t, "", strings.Fields(args)...)
+		if code == exitDone || stdout != "" || stderr != "tannery: "+want+"\n" {
+			t.Errorf("tannery %s: exit code %d, %s%s", args, code, stdout, stderr)
+		}
+		if left := names(t, folder); left != "bec-r0.5-d5.yaml bec-r0.5-d9.yaml" || string(content(t, brief)) != text {
+			t.Errorf("tannery %s: left %s", args, left)
+		}
+	}
+}
