@@ -390,3 +390,15 @@ func TestTitleOfAnyBytes(t *testing.T) {
 		t.Errorf("simulate:\n%q", answer)
 	}
 }
+
+// The name of a file is shown by how it is spelt, also in an answer.
+func TestFileNamesDoNotSteerTerminals(t *testing.T) {
+	file := filepath.Join(t.TempDir(), "a\x1b[2Jb.yaml")
+	if err := os.WriteFile(file, []byte(profileText), 0o600); err != nil {
+		t.Skip("no such names here: ", err)
+	}
+	answer := succeed(t, "", "compare", file, "--channel", "bec")
+	if strings.Contains(answer, "\x1b") || !strings.Contains(answer, `a\x1b[2Jb`) {
+		t.Errorf("%q", answer)
+	}
+}

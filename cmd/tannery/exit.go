@@ -5,10 +5,10 @@ import (
 	"errors"
 	"fmt"
 	"io"
-	"strconv"
 	"strings"
 	"syscall"
-	"unicode"
+
+	"tannery/cmd/tannery/internal/report"
 )
 
 // The exit codes. After a signal the code is exitSignalBase plus its number:
@@ -76,26 +76,9 @@ func exitCode(ctx context.Context, err error) int {
 func printError(w io.Writer, err error) {
 	for _, problem := range problems(err) {
 		for line := range strings.Lines(problem.Error()) {
-			fmt.Fprintf(w, "tannery: %s\n", visible(strings.TrimSuffix(line, "\n")))
+			fmt.Fprintf(w, "tannery: %s\n", report.Visible(strings.TrimSuffix(line, "\n")))
 		}
 	}
-}
-
-// visible replaces control characters, which names and keys from elsewhere may
-// have, by how they are spelt: they would steer the terminal.
-func visible(text string) string {
-	if !strings.ContainsFunc(text, unicode.IsControl) {
-		return text
-	}
-	var b strings.Builder
-	for _, r := range text {
-		if unicode.IsControl(r) {
-			b.WriteString(strings.Trim(strconv.QuoteRune(r), "'"))
-		} else {
-			b.WriteRune(r)
-		}
-	}
-	return b.String()
 }
 
 // problems takes joined errors apart, through usageError.

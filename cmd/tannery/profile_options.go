@@ -7,6 +7,7 @@ import (
 
 	"github.com/spf13/cobra"
 
+	"tannery/cmd/tannery/internal/report"
 	"tannery/ensembles"
 )
 
@@ -69,7 +70,7 @@ func warn(cmd *cobra.Command, warnings []string) {
 }
 
 func printWarning(w io.Writer, text string) {
-	fmt.Fprintf(w, "tannery: warning: %s\n", visible(text))
+	fmt.Fprintf(w, "tannery: warning: %s\n", report.Visible(text))
 }
 
 // profileFiles completes the argument of a command that takes one brief.

@@ -73,7 +73,7 @@ func (t *Text) Table(header []string, rows [][]string) {
 
 // WriteTo writes the text.
 func (t *Text) WriteTo(w io.Writer) (int64, error) {
-	n, err := io.WriteString(w, t.b.String())
+	n, err := io.WriteString(w, Visible(t.b.String()))
 	return int64(n), err
 }
 
