@@ -15,10 +15,11 @@ import (
 // channel is taken that brings B back to where it was. At variable nodes B
 // multiplies, so with C the parameter of the messages from check nodes that
 // channel's own is B/λ(C). What would lead out of the tunnel is thereby shut
-// off, and what is left settles, quickly with Anderson's acceleration. (Holding a functional of the density
-// and letting the channel float is how Méasson, Montanari, Richardson &
-// Urbanke trace EBP GEXIT curves: The generalized area theorem and some of its
-// consequences, IEEE Trans. Inf. Theory 55(11), 2009; they hold the entropy.)
+// off, and what is left settles, quickly with Anderson's acceleration.
+// (Holding a functional of the density and letting the channel float is how
+// Méasson, Montanari, Richardson & Urbanke trace EBP GEXIT curves: The
+// generalized area theorem and some of its consequences, IEEE Trans. Inf.
+// Theory 55(11), 2009; they hold the entropy.)
 //
 // A channel on which a fixed point exists, and every worse one, fails: an
 // evolution begins with messages worse than the fixed point's, and stays so
