@@ -48,11 +48,11 @@ func (c Course) Rate(depth float64) float64 {
 	return rate
 }
 
-// Approach finds the threshold on one grid, to the tolerance given as a
-// channel parameter, from runs that come closer to it from below, the first at
-// the given distance below guess; both 0 for none. It returns the courses of
-// the runs in increasing order of parameter. Its estimate lacks the check of a
-// run above it that QuantizedEngine makes.
+// Approach finds the threshold on one grid, to the tolerance given as a channel
+// parameter, from runs that come closer to it from below, the first at the
+// given distance below guess; both 0 for none. It returns the courses of the
+// runs in increasing order of parameter. Its estimate is predicted from these,
+// without the fixed points by which QuantizedEngine finds it.
 func Approach(ctx context.Context, e ensembles.Ensemble, g *density.Grid, f channel.Family, guess, distance, tolerance float64) (threshold float64, courses []Course, err error) {
 	a := approach{e: e, f: f, grid: g, decoded: shallow}
 	if _, err := a.bracket(ctx); err != nil {
